@@ -1,0 +1,1 @@
+"""Notes, intervals and temperaments: which pitch every stop is meant to sound."""

@@ -1,0 +1,1 @@
+"""Temperament records, one YAML file each; ``layout.job.records`` reads them."""
