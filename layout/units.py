@@ -90,8 +90,13 @@ def read_number(text: str) -> Fraction:
     if re.fullmatch(rf"{_SIGNED}0[0-9]+(?:\.[0-9]+)?", shown):
         raise TextError("a number has no leading zero", f"write {_without_leading_zeros(shown)}")
     if re.fullmatch(rf"{_SIGNED}\.[0-9]+", shown):
-        raise TextError("a number has a digit before its point", "write 0.5 rather than .5")
+        raise TextError("a number has a digit before its point", f"write {_with_zero(shown)}")
     raise TextError("a number is written like 12, 0.53, 3/8 or 25 1/2")
+
+
+def _with_zero(text: str) -> str:
+    sign = text[0] if text[0] in "+-" else ""
+    return f"{sign}0{text.lstrip('+-')}"
 
 
 def _without_leading_zeros(text: str) -> str:
@@ -128,7 +133,7 @@ def read_quantity(
     """
     shown = text.strip()
     names = ", ".join(units)
-    match = re.fullmatch(r"(.*?[0-9])\s*([A-Za-z\"µ][A-Za-z0-9/\" ]*)?", shown, re.DOTALL)
+    match = re.fullmatch(r"(.*?[0-9])\s*((?![eE][+-]?[0-9])[A-Za-z\"][A-Za-z0-9/\" ]*)?", shown, re.DOTALL)
     if match is None:
         raise TextError(f"{what} is a number with one of the units {names}")
     unit = match[2] and " ".join(match[2].split())
