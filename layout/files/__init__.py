@@ -1,0 +1,1 @@
+"""A sheet or a plan written as the bytes of one format, and stored safely."""

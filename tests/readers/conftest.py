@@ -1,0 +1,460 @@
+"""What do programs that share no code with the writers find in a file, and is it the sheet?
+
+`read_dxf_gdal`, `read_dxf_node` and `read_svg` turn a file into a `Reading`; `compare_with_sheet`
+lists everything in which a reading differs from a `Sheet`. Geometry here is written out afresh: it
+uses nothing of `layout` but the shapes themselves.
+"""
+
+from __future__ import annotations
+
+import json
+import math
+import os
+import re
+import shutil
+import subprocess
+from collections.abc import Callable, Iterable, Iterator
+from dataclasses import dataclass, field
+from pathlib import Path
+
+import numpy as np
+import pytest
+
+from layout.drawing.shapes import Arc, Circle, Lettering, Line, Outline, Polyline3D
+from layout.drawing.sheet import Sheet
+
+HERE = Path(__file__).parent
+ARC_STEP_DEG = 0.1
+"""GDAL turns arcs into chords of this angle; their middles lie r (1 - cos(step/2)) inside."""
+CHORD_SHARE = 1 - math.cos(math.radians(ARC_STEP_DEG) / 2)
+
+
+@dataclass(frozen=True)
+class Entity:
+    """One thing drawn: vertices (x, y, z), the bulge of the edge that leaves each, closed or not.
+
+    `kind` is line, arc, circle, outline or floor, or `path` where the reader does not tell.
+    `chords`: the reader has turned arcs into chords.
+    """
+
+    kind: str
+    layer: str
+    vertices: tuple[tuple[float, float, float], ...]
+    bulges: tuple[float, ...]
+    closed: bool = False
+    chords: bool = False
+
+    @property
+    def edges(self) -> list[tuple[np.ndarray, np.ndarray, float]]:
+        points = [np.array(vertex[:2]) for vertex in self.vertices]
+        ends = points[1:] + (points[:1] if self.closed else [])
+        return list(zip(points, ends, self.bulges, strict=False))
+
+    @property
+    def where(self) -> str:
+        x, y = self.vertices[0][:2]
+        return f"{self.layer} {self.kind} at ({x:.4f}, {y:.4f})"
+
+
+@dataclass(frozen=True)
+class Reading:
+    """What a reader found: entities; layers listed, unit and other kinds where it tells them."""
+
+    entities: list[Entity]
+    layers: set[str] | None = None
+    unit: str | None = None
+    foreign: list[str] = field(default_factory=list)
+
+
+# --- what a sheet should read like -------------------------------------------------------------
+
+
+def expected_entities(sheet: Sheet, names: dict[str, str] | None = None) -> list[Entity]:
+    """Write down a sheet's shapes as entities."""
+    named = names or {}
+    return [
+        entity
+        for shape in sheet.shapes
+        for entity in _expected(shape, named.get(shape.layer, shape.layer))
+    ]
+
+
+def _expected(shape: object, layer: str) -> Iterator[Entity]:
+    match shape:
+        case Line():
+            yield Entity("line", layer, _flat([shape.start, shape.end]), (0.0, 0.0))
+        case Circle():
+            yield circle(layer, shape.centre, shape.radius_mm)
+        case Arc():
+            yield arc(layer, shape.centre, shape.radius_mm, shape.start_angle, shape.end_angle)
+        case Outline():
+            bulges = shape.bulges or (0.0,) * len(shape.vertices)
+            yield Entity("outline", layer, _flat(shape.vertices), bulges, shape.closed)
+        case Polyline3D():
+            yield Entity("floor", layer, shape.vertices, (0.0,) * len(shape.vertices))
+        case Lettering():
+            for stroke in shape.strokes:
+                yield from _expected(stroke, layer)
+
+
+def _flat(points: Iterable[tuple[float, float]]) -> tuple[tuple[float, float, float], ...]:
+    return tuple((float(x), float(y), 0.0) for x, y in points)
+
+
+def circle(layer: str, centre: tuple[float, float], radius: float) -> Entity:
+    x, y = centre
+    return Entity("circle", layer, _flat([(x + radius, y), (x - radius, y)]), (1.0, 1.0), True)
+
+
+def arc(layer: str, centre: tuple[float, float], radius: float, start: float, end: float) -> Entity:
+    ends = [
+        (centre[0] + radius * math.cos(angle), centre[1] + radius * math.sin(angle))
+        for angle in (start, end)
+    ]
+    return Entity("arc", layer, _flat(ends), (math.tan((end - start) % math.tau / 4), 0.0))
+
+
+# --- distances -----------------------------------------------------------------------------------
+
+
+def _distances(points: np.ndarray, entity: Entity) -> np.ndarray:
+    """Distance of every point, shape (n, 2), from the nearest edge of an entity."""
+    nearest = np.full(len(points), np.inf)
+    straight = [(start, end) for start, end, bulge in entity.edges if bulge == 0]
+    if straight:
+        starts, ends = (np.array(side) for side in zip(*straight, strict=True))
+        way = ends - starts
+        square = np.maximum((way**2).sum(axis=1), 1e-300)
+        for place, point in enumerate(points):
+            share = np.clip(((point - starts) * way).sum(axis=1) / square, 0, 1)
+            gaps = np.hypot(*(starts + share[:, None] * way - point).T)
+            nearest[place] = min(nearest[place], gaps.min())
+    for start, end, bulge in entity.edges:
+        if bulge:
+            nearest = np.minimum(nearest, _from_arc(points, start, end, bulge))
+    return nearest
+
+
+def _arc_frame(start: np.ndarray, end: np.ndarray, bulge: float) -> tuple[np.ndarray, float]:
+    """Centre and radius from the sagitta, bulge times half the chord."""
+    half = math.dist(start, end) / 2
+    sagitta = abs(bulge) * half
+    radius = (half**2 + sagitta**2) / (2 * sagitta)
+    along = (end - start) / (2 * half)
+    right = np.array([along[1], -along[0]]) * math.copysign(1, bulge)
+    top = (start + end) / 2 + right * sagitta
+    return top - right * radius, radius
+
+
+def _from_arc(points: np.ndarray, start: np.ndarray, end: np.ndarray, bulge: float) -> np.ndarray:
+    centre, radius = _arc_frame(start, end, bulge)
+    first = math.atan2(*(start - centre)[::-1])
+    sweep = 4 * math.atan(bulge)
+    angle = np.arctan2(points[:, 1] - centre[1], points[:, 0] - centre[0])
+    turned = ((angle - first) * math.copysign(1, sweep)) % math.tau
+    on_circle = np.abs(np.hypot(*(points - centre).T) - radius)
+    to_ends = np.minimum(np.hypot(*(points - start).T), np.hypot(*(points - end).T))
+    return np.where(turned <= abs(sweep), on_circle, to_ends)
+
+
+def _middles(entity: Entity) -> tuple[np.ndarray, float]:
+    """Middle of every edge, and the largest radius among them."""
+    points, largest = [], 0.0
+    for start, end, bulge in entity.edges:
+        middle = (start + end) / 2
+        if bulge:
+            way = end - start
+            middle = middle + np.array([way[1], -way[0]]) / 2 * bulge
+            largest = max(largest, _arc_frame(start, end, bulge)[1])
+        points.append(middle)
+    return np.array(points), largest
+
+
+def deviation_mm(expected: Entity, found: Entity) -> float:
+    """The largest distance between what should be there and what is, both ways."""
+    mine, theirs = np.array(expected.vertices), np.array(found.vertices)
+    if expected.kind == "floor" and found.kind == "floor":
+        return float(np.abs(mine - theirs).max()) if mine.shape == theirs.shape else math.inf
+    off = float(_distances(theirs[:, :2], expected).max())
+    off = max(off, float(np.abs(theirs[:, 2]).max()) if found.kind != "floor" else 0.0)
+    if expected.kind != "circle":
+        gaps = np.hypot(*(mine[:, None, :2] - theirs[None, :, :2]).transpose(2, 0, 1))
+        off = max(off, float(gaps.min(axis=1).max()))
+    middles, radius = _middles(expected)
+    allowed = radius * CHORD_SHARE * 1.01 if found.chords else 0.0
+    return max(off, float(_distances(middles, found).max()) - allowed)
+
+
+# --- the comparison ------------------------------------------------------------------------------
+
+
+def compare(
+    sheet: Sheet, reading: Reading, tolerance_mm: float, names: dict[str, str] | None = None
+) -> list[str]:
+    """Say everything in which a reading differs from the sheet; empty when nothing does."""
+    expected = expected_entities(sheet, names)
+    problems = [f"foreign entity {kind}" for kind in reading.foreign]
+    if reading.unit not in {None, "mm"}:
+        problems.append(f"unit is {reading.unit}, not mm")
+    layers = {entity.layer for entity in expected}
+    if reading.layers is not None and reading.layers - {"0"} != layers:
+        problems.append(f"layers {sorted(reading.layers)}, not {sorted(layers)}")
+    pairs, missing, extra = _pair_up(expected, reading.entities, tolerance_mm)
+    problems += [f"missing: {entity.where}" for entity in missing]
+    problems += [f"extra: {entity.where}" for entity in extra]
+    for mine, found in pairs:
+        off = deviation_mm(mine, found)
+        if not off <= tolerance_mm:
+            problems.append(f"{mine.where}: off by {off:.6g} mm")
+        if found.kind not in {mine.kind, "path"}:
+            problems.append(f"{mine.where}: is a {found.kind}")
+        if mine.closed != found.closed:
+            problems.append(f"{mine.where}: {'open' if mine.closed else 'closed'}")
+    return problems + doubled(reading.entities) + degenerate(reading.entities)
+
+
+def _pair_up(
+    expected: list[Entity], found: list[Entity], tolerance_mm: float
+) -> tuple[list[tuple[Entity, Entity]], list[Entity], list[Entity]]:
+    """Pair entities of one layer by their boxes: those that agree first, then the nearest."""
+    pairs, waiting, free = [], expected, list(range(len(found)))
+    boxes = np.array([_box(entity) for entity in found]).reshape(-1, 4)
+    for limit in (10 * tolerance_mm, math.inf):
+        todo, waiting = waiting, []
+        for mine in todo:
+            rivals = [i for i in free if found[i].layer == mine.layer]
+            gaps = np.abs(boxes[rivals] - _box(mine)).max(axis=1) if rivals else np.array([])
+            if rivals and gaps.min() <= limit + _middles(mine)[1] * CHORD_SHARE:
+                best = rivals[int(gaps.argmin())]
+                free.remove(best)
+                pairs.append((mine, found[best]))
+            else:
+                waiting.append(mine)
+    return pairs, waiting, [found[i] for i in free]
+
+
+def _box(entity: Entity) -> np.ndarray:
+    points = np.array([vertex[:2] for vertex in entity.vertices])
+    if not entity.chords:
+        points = np.concatenate([points, *(_samples(*edge) for edge in entity.edges)])
+    return np.concatenate([points.min(axis=0), points.max(axis=0)])
+
+
+def _samples(start: np.ndarray, end: np.ndarray, bulge: float) -> np.ndarray:
+    """Points along an arc where it crosses its own quarters."""
+    if not bulge:
+        return np.array([start])
+    centre, radius = _arc_frame(start, end, bulge)
+    corners = centre + radius * np.array([(1, 0), (0, 1), (-1, 0), (0, -1)])
+    return np.concatenate([[start], corners[_from_arc(corners, start, end, bulge) < 1e-9]])
+
+
+def doubled(entities: list[Entity], tolerance_mm: float = 1e-5) -> list[str]:
+    """Name straight edges that share a stretch, and arcs that are there twice."""
+    straight, curved, problems = [], [], []
+    for entity in entities:
+        if entity.chords or entity.kind == "floor":
+            continue
+        for start, end, bulge in entity.edges:
+            (curved if bulge else straight).append((start, end, bulge, entity))
+    if straight:
+        start = np.array([edge[0] for edge in straight])
+        way = np.array([edge[1] for edge in straight]) - start
+        length = np.maximum(np.hypot(*way.T), 1e-300)
+        unit = way / length[:, None]
+        for i, (from_i, to_i, _, entity) in enumerate(straight):
+            # Distance of edge i's ends from the line of every longer edge, and its shadow on it.
+            longer = (length > length[i]) | ((length == length[i]) & (np.arange(len(way)) > i))
+            off, along = [], []
+            for point in (from_i, to_i):
+                gap = point - start
+                off.append(np.abs(gap[:, 0] * unit[:, 1] - gap[:, 1] * unit[:, 0]))
+                along.append((gap * unit).sum(axis=1))
+            shared = np.minimum(np.maximum(*along), length) - np.maximum(np.minimum(*along), 0)
+            hits = longer & (np.maximum(*off) < tolerance_mm) & (shared > tolerance_mm)
+            problems += [
+                f"drawn twice: {entity.where} and {straight[j][3].where}"
+                for j in np.flatnonzero(hits)
+            ]
+    marks: dict[tuple[float, ...], Entity] = {}
+    for start, end, bulge, entity in curved:
+        way = end - start
+        middle = (start + end) / 2 + np.array([way[1], -way[0]]) / 2 * bulge
+        ends = sorted((tuple(np.round(start, 4)), tuple(np.round(end, 4))))
+        mark = (*ends[0], *ends[1], *np.round(middle, 4))
+        if mark in marks:
+            problems.append(f"drawn twice: {entity.where} and {marks[mark].where}")
+        marks[mark] = entity
+    return problems
+
+
+def degenerate(entities: list[Entity]) -> list[str]:
+    """Name edges without length, and closed chains that repeat their first vertex."""
+    return [
+        f"an edge without length: {entity.where}"
+        for entity in entities
+        if entity.kind != "floor"
+        and not entity.chords
+        and any(math.dist(start, end) < 1e-9 for start, end, _ in entity.edges)
+    ]
+
+
+# --- the readers ---------------------------------------------------------------------------------
+
+
+def skip_or_fail(reason: str) -> None:
+    """Skip, or fail where nothing may be skipped."""
+    if os.environ.get("STOPWRIGHT_NO_SKIPS") == "1":
+        pytest.fail(reason)
+    pytest.skip(reason)
+
+
+def _read_dxf_gdal(path: Path) -> Reading:
+    pyogrio = pytest.importorskip("pyogrio")
+    shapely = pytest.importorskip("shapely")
+    pyogrio.set_gdal_config_options({"OGR_ARC_STEPSIZE": ARC_STEP_DEG})
+    meta, _, geometries, columns = pyogrio.raw.read(path)
+    column = dict(zip(meta["fields"], columns, strict=True))
+    entities, foreign = [], []
+    for wkb, layer, classes in zip(geometries, column["Layer"], column["SubClasses"], strict=True):
+        kind = _GDAL_KINDS.get(classes.removeprefix("AcDbEntity:"))
+        shape = shapely.from_wkb(bytes(wkb))
+        if kind is None or shape.geom_type != "LineString":
+            foreign.append(f"{classes} {shape.geom_type}")
+            continue
+        points = np.zeros((shapely.get_num_coordinates(shape), 3))
+        points[:, : 3 if shape.has_z else 2] = shapely.get_coordinates(
+            shape, include_z=bool(shape.has_z)
+        )
+        closed = kind in {"outline", "circle"} and bool((points[0] == points[-1]).all())
+        vertices = tuple(map(tuple, points[:-1] if closed else points))
+        chords = kind in {"arc", "circle"} or len(vertices) > 100
+        entities.append(Entity(kind, layer, vertices, (0.0,) * len(vertices), closed, chords))
+    return Reading(entities, foreign=foreign)
+
+
+_GDAL_KINDS = {
+    "AcDbLine": "line",
+    "AcDbCircle": "circle",
+    "AcDbCircle:AcDbArc": "arc",
+    "AcDbPolyline": "outline",
+    "AcDb3dPolyline": "floor",
+}
+
+
+def _read_dxf_node(path: Path) -> Reading:
+    node = shutil.which("node")
+    if node is None:
+        skip_or_fail("node is not installed")
+    if not (HERE / "node_modules" / "dxf-parser").is_dir():
+        skip_or_fail("dxf-parser is not installed: npm ci --prefix tests/readers")
+    said = subprocess.run(
+        [str(node), str(HERE / "dxf_parser.cjs"), str(path)],
+        capture_output=True, check=True, timeout=60,
+    ).stdout  # fmt: skip
+    drawing = json.loads(said)
+    entities, foreign = [], []
+    for raw in drawing["entities"]:
+        entity = _from_node(raw)
+        if entity is None or raw.get("extrusionDirection", {"z": 1})["z"] != 1:
+            foreign.append(raw["type"])
+        else:
+            entities.append(entity)
+    unit = {1: "in", 4: "mm", 6: "m"}.get(drawing["header"].get("$INSUNITS"), "unknown")
+    return Reading(entities, layers=set(drawing["layers"]), unit=unit, foreign=foreign)
+
+
+def _from_node(raw: dict) -> Entity | None:
+    layer = raw["layer"]
+    vertices = tuple((v["x"], v["y"], v.get("z", 0.0)) for v in raw.get("vertices", ()))
+    bulges = tuple(v.get("bulge", 0.0) for v in raw.get("vertices", ()))
+    match raw["type"]:
+        case "LINE":
+            return Entity("line", layer, vertices, bulges)
+        case "LWPOLYLINE":
+            return Entity("outline", layer, vertices, bulges, bool(raw.get("shape")))
+        case "POLYLINE" if raw.get("is3dPolyline"):
+            return Entity("floor", layer, vertices, bulges, bool(raw.get("shape")))
+        case "CIRCLE":
+            return circle(layer, (raw["center"]["x"], raw["center"]["y"]), raw["radius"])
+        case "ARC":
+            centre = (raw["center"]["x"], raw["center"]["y"])
+            return arc(layer, centre, raw["radius"], raw["startAngle"], raw["endAngle"])
+    return None
+
+
+def _read_svg(path: Path) -> Reading:
+    svgelements = pytest.importorskip("svgelements")
+    # At 25.4 pixels an inch svgelements gives millimetres, from the width and the viewBox.
+    drawing = svgelements.SVG.parse(str(path), ppi=25.4)
+    # Its millimetre is 5e-7 too long, by the digits of its inch: within that, the unit is mm.
+    millimetre = drawing.width / drawing.viewbox.width
+    unit = "mm" if math.isclose(millimetre, 1, rel_tol=1e-6) else f"{millimetre} mm"
+    said = next(str(part) for part in drawing if type(part).__name__ == "Desc")
+    left, top = map(
+        float, re.search(r"(-?[\d.]+) mm from the left and (-?[\d.]+) mm", said).groups()
+    )
+    entities, foreign, layers = [], [], set()
+    for group in drawing:
+        if not isinstance(group, svgelements.Group):
+            continue
+        layers.add(group.id)
+        for part in group:
+            if isinstance(part, svgelements.Circle):
+                x, y, radius = (float(n) / millimetre for n in (part.cx, part.cy, part.rx))
+                entities.append(circle(group.id, (x - left, top - y), radius))
+            elif isinstance(part, svgelements.Path):
+                entities += _from_path(group.id, part, left, top, millimetre)
+            else:
+                foreign.append(type(part).__name__)
+    return Reading(entities, layers=layers, unit=unit, foreign=foreign)
+
+
+def _from_path(
+    layer: str, path: object, left: float, top: float, millimetre: float
+) -> Iterator[Entity]:
+    for subpath in path.as_subpaths():
+        points, bulges, closed = [], [], False
+        for part in subpath:
+            name = type(part).__name__
+            if name == "Close":
+                closed = True
+                if math.dist(_xy(part.start), _xy(part.end)) < 1e-9:
+                    points.pop()
+                    bulges.pop()
+                continue
+            points.append((part.end.x / millimetre - left, top - part.end.y / millimetre))
+            bulges.append(0.0)
+            if name == "Arc":
+                # y points up here, so the way round is the other one.
+                bulges[-2] = math.tan(-part.sweep / 4)
+            elif name not in {"Move", "Line"}:
+                raise AssertionError(f"a {name} in a path")
+        yield Entity("path", layer, _flat(points), tuple(bulges), closed)
+
+
+def _xy(point: object) -> tuple[float, float]:
+    return point.x, point.y
+
+
+# --- the fixtures --------------------------------------------------------------------------------
+
+
+@pytest.fixture(scope="session")
+def read_dxf_gdal() -> Callable[[Path], Reading]:
+    return _read_dxf_gdal
+
+
+@pytest.fixture(scope="session")
+def read_dxf_node() -> Callable[[Path], Reading]:
+    return _read_dxf_node
+
+
+@pytest.fixture(scope="session")
+def read_svg() -> Callable[[Path], Reading]:
+    return _read_svg
+
+
+@pytest.fixture(scope="session")
+def compare_with_sheet() -> Callable[..., list[str]]:
+    return compare
