@@ -1,0 +1,1 @@
+"""An instrument made into a plan: pitch, strings and geometry in order, and what is doubtful."""
