@@ -6,7 +6,7 @@ derivatives a stop, by central differences, give the answer to any rule that sha
 
 from __future__ import annotations
 
-from dataclasses import dataclass, replace
+from dataclasses import dataclass
 
 import numpy as np
 from numpy.typing import NDArray
@@ -22,9 +22,6 @@ Array = NDArray[np.float64]
 
 SLOPE_STEP_MM = 5e-3
 """Central differences: wrong by some 1e-9 cent/mm from rounding and as much from curvature."""
-
-APART = 0.1
-"""Patterns over the strings that differ less than this, as nut and saddle edges do, are one."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -136,7 +133,8 @@ class Response:
     """Errors of a set of strings under two rules, as functions of the rules' unknowns.
 
     The unknowns, shape (K,), are those of the nut followed by those of the saddle. ``told``,
-    shape (S, R), are patterns over the strings of a single fret: see `told_by_one_fret`.
+    shape (S, R), are patterns over the strings of a single fret, as `one_fret` explains; then
+    only what the errors have of each pattern is squared.
     """
 
     body: StringBody
@@ -174,10 +172,10 @@ class Response:
 
         Where strings cannot be stopped or tuned the sum is infinite.
         """
-        by_nut, by_saddle = self._slopes(unknowns)
+        by_nut, by_saddle = self.figure_slopes(unknowns)
         moves, move_slopes = self._moves(unknowns, by_nut, by_saddle)
         try:
-            error, on_nut, on_saddle = self._errors_and_slopes(*self.figures_mm(unknowns))
+            error, on_nut, on_saddle = self.weighted_errors(*self.figures_mm(unknowns))
         except (NoSolutionError, ValueError):
             return Linearised(np.inf, np.zeros(0), np.zeros((0, self.count)), moves, move_slopes)
         total = float((error**2).sum())
@@ -191,31 +189,10 @@ class Response:
             total = float(residuals @ residuals)
         return Linearised(total, residuals, slopes, moves, move_slopes)
 
-    def told_by_one_fret(self) -> Response:
-        """Give the response that asks of a single balanced fret no more than it can tell.
-
-        One fret cannot tell nut from saddle. Where strings share figures at both ends, least
-        squares would play off against each other, over metres, what little the strings differ
-        in this. There the errors are only weighed together over the patterns across the strings
-        that the rules can follow, fewer than the unknowns, and the least move decides the rest.
-        """
-        start = np.zeros(self.count)
-        balanced = self.balance.counted > 0
-        if not (self.nut.count and self.saddle.count and balanced.any(axis=0).sum() == 1):
-            return self
-        _, on_nut, _ = self._errors_and_slopes(*self.figures_mm(start))
-        patterns = np.sum(self._slopes(start), axis=0) * balanced.any(axis=1)[:, None]
-        sizes, directions = np.linalg.svd(patterns)[1:]
-        apart = directions[: np.count_nonzero(sizes > APART * sizes[0])]
-        if len(apart) == np.count_nonzero(balanced):
-            return self  # every string's own pitch can be met: nothing is played off
-        told = np.linalg.qr(on_nut.sum(axis=1)[:, None] * (patterns @ apart.T))[0]
-        return replace(self, told=told)
-
     def continue_linearly(self, found: Linearised, there: Array, unknowns: Array) -> Linearised:
         """Give squares and moves at any unknowns as if errors were linear from ``there``."""
         residuals = found.residuals + found.slopes @ (unknowns - there)
-        moves, move_slopes = self._moves(unknowns, *self._slopes(unknowns))
+        moves, move_slopes = self._moves(unknowns, *self.figure_slopes(unknowns))
         total = found.sum_of_squares + float(
             residuals @ residuals - found.residuals @ found.residuals
         )
@@ -227,11 +204,11 @@ class Response:
         direction = self.ends.direction[fretted]
         setback_mm = self.figures_mm(unknowns)[1][fretted]
         points_mm = self.ends.bridge_mm[fretted] + setback_mm[:, None] * direction
-        by_saddle = self._slopes(unknowns)[1][fretted]
+        by_saddle = self.figure_slopes(unknowns)[1][fretted]
         return Placed(points_mm, direction[:, :, None] * by_saddle[:, None, :])
 
-    def _slopes(self, unknowns: Array) -> tuple[Array, Array]:
-        """Derivatives of nut shifts and of setbacks by all unknowns, shape (S, K) each."""
+    def figure_slopes(self, unknowns: Array) -> tuple[Array, Array]:
+        """Give the derivatives of nut shifts and of setbacks by all unknowns, shape (S, K) each."""
         at_nut, at_saddle = np.split(unknowns, [self.nut.count])
         return (
             np.pad(self.nut.slopes(at_nut), ((0, 0), (0, self.saddle.count))),
@@ -241,8 +218,11 @@ class Response:
     def _moves(self, unknowns: Array, by_nut: Array, by_saddle: Array) -> tuple[Array, Array]:
         return np.concatenate(self.figures_mm(unknowns)), np.vstack([by_nut, by_saddle])
 
-    def _errors_and_slopes(self, shift_mm: Array, setback_mm: Array) -> tuple[Array, Array, Array]:
-        """Weighted errors (cents) and their derivatives by n and by s (cents/mm), (S, F) each."""
+    def weighted_errors(self, shift_mm: Array, setback_mm: Array) -> tuple[Array, Array, Array]:
+        """Give errors (cents) and their derivatives by n and by s (cents/mm), (S, F) each.
+
+        All times the square root of the weight; 0 where a stop is not balanced.
+        """
         step = SLOPE_STEP_MM
         asked = np.array([[0.0, 0.0], [step, 0.0], [-step, 0.0], [0.0, step], [0.0, -step]])
         cents = predict_stops(

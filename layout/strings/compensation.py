@@ -24,6 +24,7 @@ from layout.strings.balance import Balance, EndLines, Misfit, Response, measure_
 from layout.strings.least_move import Linearised, solve_least_move
 from layout.strings.lie import StringLie
 from layout.strings.moves import Move, free_unknowns
+from layout.strings.one_fret import ask_no_more, hold_nut
 from layout.strings.stopping import StringBody
 from layout.strings.strip import Strip, hull_slants, narrowest_strip
 from layout.strings.strip_limit import Held, solve_in_strip
@@ -33,6 +34,7 @@ Array = NDArray[np.float64]
 SLANTS_KEPT = 2
 """Slants of the saddle strip that are solved in full, of all that are tried."""
 SAME_SLANT = 1e-6
+QUESTION = "compensation at nut and saddle (balance more frets, or free fewer figures)"
 FITS_MM = 1e-9
 """Tolerance of algebra."""
 
@@ -66,15 +68,6 @@ class Compensation:
     strip: Strip
     limit_cost_cents: float | None
     fits: bool
-
-
-@dataclass(frozen=True, slots=True)
-class LadderRung:
-    """One choice of nut and saddle and what it leaves over the balanced stops."""
-
-    nut: str
-    saddle: str
-    misfit: Misfit
 
 
 def solve_compensation(
@@ -130,10 +123,8 @@ def solve_compensation(
     response = _free(body, lie, balance=balance, ends=ends, nut=nut, saddle=saddle)
     start = np.zeros(response.count)
     response.error_cents(start)  # says what is impossible before anything moves
-    response = response.told_by_one_fret()
-    unknowns = solve_least_move(
-        response.linearise, start, question="compensation at nut and saddle"
-    )
+    response = ask_no_more(response)
+    unknowns = solve_least_move(response.linearise, start, question=QUESTION)
     best = _report(response, unknowns)
     if strip_mm is None:
         return best
@@ -141,55 +132,10 @@ def solve_compensation(
         return replace(best, fits=best.strip.width_mm <= strip_mm + FITS_MM)
     if best.strip.width_mm <= strip_mm:
         return replace(best, limit_cost_cents=0.0)
+    response, unknowns = hold_nut(response, unknowns)
     held = _report(response, _solve_held(response, unknowns, width_mm=strip_mm).unknowns)
-    cost_cents = held.misfit.rms_cents - best.misfit.rms_cents
+    cost_cents = max(held.misfit.rms_cents - best.misfit.rms_cents, 0.0)
     return replace(held, limit_cost_cents=cost_cents)
-
-
-def compensation_ladder(
-    body: StringBody,
-    lie: StringLie,
-    *,
-    balance: Balance,
-    ends: EndLines,
-    unmoved_nut_mm: Array | None = None,
-    nut_is_free: bool = True,
-) -> tuple[LadderRung, ...]:
-    """Compare the usual choices of nut and saddle, from leaving both alone to freeing both.
-
-    Parameters
-    ----------
-    body, lie, balance, ends
-        As for `solve_compensation`.
-    unmoved_nut_mm
-        Shape (S,): where the nut stands when it is not compensated, such as half a kerf; None: 0.
-    nut_is_free
-        False leaves out the last rung: a zero fret cannot be compensated.
-
-    Returns
-    -------
-    tuple[LadderRung, ...]
-        none/none, none/straight, none/each, each/each, without a limit on the saddle.
-
-    Raises
-    ------
-    NoSolutionError, ValueError
-        As `solve_compensation`.
-
-    """
-    unmoved: Move = "none" if unmoved_nut_mm is None else unmoved_nut_mm
-    choices: list[tuple[str, Move, Move]] = [
-        ("none", unmoved, "none"),
-        ("none", unmoved, "straight"),
-        ("none", unmoved, "each"),
-    ]
-    if nut_is_free:
-        choices.append(("each", "each", "each"))
-    rungs = []
-    for name, nut, saddle in choices:
-        found = solve_compensation(body, lie, balance=balance, ends=ends, nut=nut, saddle=saddle)
-        rungs.append(LadderRung(name, str(saddle), found.misfit))
-    return tuple(rungs)
 
 
 def _free(

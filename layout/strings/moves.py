@@ -164,7 +164,7 @@ def free_unknowns(
 
 
 def _pattern(group: NDArray[np.int_], taking_part: Mask) -> Array:
-    names = np.unique(group[taking_part])
+    names = np.array(sorted(set(group[taking_part].tolist())))
     shared = group[:, None] == names[None, :]
     return np.asarray(shared & taking_part[:, None], np.float64)
 

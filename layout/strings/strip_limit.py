@@ -30,12 +30,10 @@ Array = NDArray[np.float64]
 
 STEPS = 200
 HALVINGS = 25
-OUTSIDE_MM = 5e-10
+OUTSIDE_MM = 5e-9
 """Points outside the strip by less than this are in it; both sides come in by as much."""
-HOLD = 1e-5
-"""Proximal weight of the unknowns, against the slope felt most."""
-HOLD_STRIP = 3e-2
-"""Proximal weight of the strip's own place and slant, which no residual feels directly."""
+HOLD = 3e-2
+"""Proximal weight, against the slope felt most, of what no residual feels directly."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -165,24 +163,23 @@ def solve_in_strip(
 def _bounded_step(here: Linearised, room_mm: Array, room_slopes: Array) -> Array:
     """Give the step (K + 2,) of least sum, then of least moves, that stays in the strip."""
     count = here.slopes.shape[1]
-    scale = float(np.linalg.norm(here.slopes, 2)) or 1.0 if here.slopes.size else 1.0
-    hold = np.diag(scale * np.r_[np.full(count, HOLD), HOLD_STRIP, HOLD_STRIP])
-    matrix = np.vstack([np.pad(here.slopes, ((0, 0), (0, 2))), hold])
-    wanted = np.concatenate([-here.residuals, np.zeros(count + 2)])
-    step = solve_bounded(matrix, wanted, room_slopes, -room_mm)
+    scale = float(np.linalg.norm(here.slopes, 2)) if here.slopes.size else 0.0
     unfelt = split_felt(here.slopes)[1]
+    free = np.zeros((unfelt.shape[1] + 2, count + 2))
+    free[:-2, :count], free[-2:, count:] = unfelt.T, np.eye(2)
+    matrix = np.vstack([np.pad(here.slopes, ((0, 0), (0, 2))), (scale or 1.0) * HOLD * free])
+    wanted = np.concatenate([-here.residuals, np.zeros(len(free))])
+    step = solve_bounded(matrix, wanted, room_slopes, -room_mm)
     moved = here.move_slopes @ unfelt
     if not moved.any():
         return step
     # Second stage: along what the sum does not feel, and with the strip free to follow.
-    choices = unfelt.shape[1]
-    way = np.zeros((count + 2, choices + 2))
-    way[:count, :choices] = unfelt
-    way[count:, choices:] = np.eye(2)
-    hold = np.diag(np.r_[np.full(choices, HOLD), HOLD_STRIP, HOLD_STRIP])
-    matrix = np.vstack([np.pad(moved, ((0, 0), (0, 2))), hold])
+    way = free.T
+    hold = HOLD * np.eye(len(free))
+    hold[:-2] *= HOLD  # these are held by the moves themselves
     moves = here.moves + here.move_slopes @ step[:count]
-    wanted = np.concatenate([-moves, np.zeros(choices + 2)])
+    matrix = np.vstack([np.pad(moved, ((0, 0), (0, 2))), hold])
+    wanted = np.concatenate([-moves, np.zeros(len(free))])
     room_left = room_mm + room_slopes @ step
     return np.asarray(
         step + way @ solve_bounded(matrix, wanted, room_slopes @ way, np.minimum(-room_left, 0.0))

@@ -3,7 +3,7 @@ from dataclasses import replace
 import numpy as np
 import pytest
 
-from layout.strings.compensation import compensation_ladder, solve_compensation
+from layout.strings.compensation import solve_compensation
 
 
 def solve(case, nut="each", saddle="each", **options):
@@ -139,34 +139,6 @@ def test_weights_pull(strung):
     even = solve(reweigh(case, np.ones((1, 12))), "none", "each")
     pulled = solve(reweigh(case, heavy), "none", "each")
     assert abs(pulled.error_cents[0, 11]) < abs(even.error_cents[0, 11]) / 100
-
-
-def test_ladder(strung):
-    case = strung(11)
-    rungs = compensation_ladder(case.body, case.lie, balance=case.balance, ends=case.ends)
-    assert [(rung.nut, rung.saddle) for rung in rungs] == [
-        ("none", "none"),
-        ("none", "straight"),
-        ("none", "each"),
-        ("each", "each"),
-    ]
-    assert rungs[-1].misfit == solve(case).misfit
-    assert rungs[1].misfit == solve(case, "none", "straight").misfit
-
-
-def test_ladder_with_a_kerf_and_without_the_nut(strung):
-    case = strung(12)
-    kerf = np.full(6, 0.29)
-    rungs = compensation_ladder(
-        case.body,
-        case.lie,
-        balance=case.balance,
-        ends=case.ends,
-        unmoved_nut_mm=kerf,
-        nut_is_free=False,
-    )
-    assert len(rungs) == 3
-    assert rungs[0].misfit == solve(case, kerf, "none").misfit
 
 
 def test_every_string_at_one_place_across_the_board(strung):
