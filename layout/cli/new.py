@@ -5,6 +5,7 @@ from __future__ import annotations
 import click
 
 from layout.api import make_starter, starter_kinds
+from layout.errors import TextError
 
 
 @click.command(
@@ -22,7 +23,8 @@ def command(kind: str | None, settings: tuple[str, ...]) -> None:
     if kind is None:
         click.echo("\n".join(starter_kinds()))
         return
-    if kind not in starter_kinds():
-        known = ", ".join(starter_kinds())
-        raise click.UsageError(f"no kind {kind!r}; the kinds are {known}")
-    click.echo(make_starter(kind, settings), nl=False)
+    try:
+        starter = make_starter(kind, settings)
+    except TextError as error:
+        raise click.UsageError(str(error)) from error
+    click.echo(starter, nl=False)

@@ -27,6 +27,9 @@ NEAREST_EDGE_MM = 1.5
 NEAREST_NEIGHBOUR_MM = 3.0
 """Least clear space between courses; common practice, no source."""
 
+TOUCHING_MM = 1e-9
+"""Strings closer than the tolerance of algebra touch."""
+
 STEEPEST_NUT_DEG = 20.0
 """Steepest nut line that is still easy to make and play; common practice, no source."""
 
@@ -160,10 +163,11 @@ def _strings_too_close(plan: Plan) -> Iterator[Finding]:
         gaps = clear_gaps_mm(points[:, 1], plan.instrument.strings)
         for index, gap in enumerate(gaps):
             least = 0.0 if course[index] == course[index + 1] else NEAREST_NEIGHBOUR_MM
-            if gap < least or gap <= 0:
+            touching = gap < TOUCHING_MM
+            if gap < least or touching:
                 yield Finding(
                     "strings-too-close",
-                    "warning" if gap > 0 else "error",
+                    "error" if touching else "warning",
                     f"Strings {index + 1} and {index + 2} are {gap:.2f} mm apart at the {name}, "
                     f"clear. Widen the spread there.",
                     string=index + 1,

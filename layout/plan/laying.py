@@ -61,13 +61,14 @@ def lay_out(instrument: Instrument) -> Laid:
     for index, string in enumerate(instrument.strings):
         if string.open_length_mm is not None:
             strings = end_open(strings, index, string.open_length_mm)
+    wanted = _wanted_cents(instrument, whole, served)
     if short:
-        strings = _start_short_strings(instrument, strings, targets, served)
+        strings = _start_short_strings(instrument, strings, wanted, served)
         targets = _targets(
             instrument, starts=[s.starts_at.fret if s.starts_at else 0 for s in instrument.strings]
         )
     own = divide_mm(strings.scale_mm, targets)
-    frets = _lay_lines(instrument, strings, targets, served, behind_cents=whole - targets)
+    frets = _lay_lines(instrument, strings, wanted - (whole - targets), served)
     return Laid(targets, own, served, strings, frets)
 
 
@@ -167,11 +168,11 @@ def _square_fraction(instrument: Instrument, cents: Array) -> float:
 
 
 def _start_short_strings(
-    instrument: Instrument, strings: StringLines, targets: Array, served: Mask
+    instrument: Instrument, strings: StringLines, wanted: Array, served: Mask
 ) -> StringLines:
     """Short strings start at frets laid for the strings that reach the nut."""
     full_only = served & strings.full[:, None]
-    board = _lay_lines(instrument, strings, targets, full_only)
+    board = _lay_lines(instrument, strings, wanted, full_only)
     listed = instrument.spread.nut_y_mm if isinstance(instrument.spread, SpreadList) else None
     for index, string in enumerate(instrument.strings):
         if string.starts_at is not None:
@@ -186,23 +187,24 @@ def _start_short_strings(
 
 
 def _lay_lines(
-    instrument: Instrument,
-    strings: StringLines,
-    targets: Array,
-    served: Mask,
-    *,
-    behind_cents: Array | float = 0.0,
+    instrument: Instrument, strings: StringLines, wanted: Array, served: Mask
 ) -> FretLines:
-    """Lay every fret; ``behind_cents`` is what lies between the nut and a short string's start."""
+    own = divide_mm(strings.scale_mm, wanted)
+    free = np.full(instrument.frets.count, instrument.frets.slant == "free")
     votes = vote_weights(served, courses(instrument))
-    above_nut = targets + behind_cents
+    return lay_frets(strings, own, votes=votes, served=served, free=free)
+
+
+def _wanted_cents(instrument: Instrument, above_nut: Array, served: Mask) -> Array:
+    """Give the cents every fret is laid for: the targets, or the pitch that is favoured.
+
+    Counted from the board's nut for short strings too, so that strings can be compared.
+    """
+    votes = vote_weights(served, courses(instrument))
     wanted = above_nut.copy()
     for fret, pitch in instrument.frets.favour.items():
         wanted[:, fret - 1] = _favoured(pitch, above_nut[:, fret - 1], votes[:, fret - 1])
-    wanted -= behind_cents
-    own = divide_mm(strings.scale_mm, wanted)
-    free = np.full(instrument.frets.count, instrument.frets.slant == "free")
-    return lay_frets(strings, own, votes=votes, served=served, free=free)
+    return wanted
 
 
 def _favoured(pitch: str | tuple[int, ...], targets: Array, votes: Array) -> float:
