@@ -85,5 +85,9 @@ class NoSolutionError(StopwrightError, ArithmeticError):
         )
 
 
+class ProofError(StopwrightError):
+    """A drawing, read back from its bytes, does not hold what was planned."""
+
+
 class FileError(StopwrightError, OSError):
     """A file or directory could not be read or written."""

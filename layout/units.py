@@ -44,6 +44,16 @@ UNIT_MASS_UNITS_KG_PER_M = {
     "lb/in": Fraction("0.45359237") / Fraction("0.0254"),
 }
 
+SPELT_OTHERWISE = {
+    "inch": "in",
+    "inches": "in",
+    "''": "in",
+    "Newton": "N",
+    "lbs": "lb",
+    "kg": "kgf",
+}
+"""Spellings that people use, and ours."""
+
 _SIGNED = r"[+-]?"
 _PLAIN = r"(?:0|[1-9][0-9]{0,14})"
 _DECIMAL = re.compile(rf"({_SIGNED}{_PLAIN}(?:\.[0-9]{{1,30}})?)(?:[eE]([+-]?[0-9]{{1,2}}))?")
@@ -133,7 +143,9 @@ def read_quantity(
     """
     shown = text.strip()
     names = ", ".join(units)
-    match = re.fullmatch(r"(.*?[0-9])\s*((?![eE][+-]?[0-9])[A-Za-z\"][A-Za-z0-9/\" ]*)?", shown, re.DOTALL)
+    match = re.fullmatch(
+        r"(.*?[0-9])\s*((?![eE][+-]?[0-9])[A-Za-z\"][A-Za-z0-9/\" ]*)?", shown, re.DOTALL
+    )
     if match is None:
         raise TextError(f"{what} is a number with one of the units {names}")
     unit = match[2] and " ".join(match[2].split())
@@ -142,7 +154,10 @@ def read_quantity(
             raise TextError(f"{what} needs its unit", f"write one of {names} after the number")
         unit = bare
     if unit not in units:
-        raise TextError(f"{what} has one of the units {names}")
+        known = SPELT_OTHERWISE.get(unit)
+        raise TextError(
+            f"{what} has one of the units {names}", f"write {known}" if known in units else ""
+        )
     return read_number(match[1]) * units[unit]
 
 

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Iterable, Sequence
 
 
@@ -23,3 +24,20 @@ def align(header: Sequence[str], rows: Iterable[Sequence[str]], *, left: int = 0
         ).rstrip()
         for row in table
     )
+
+
+def figure(value: float | None, digits: int) -> str:
+    """Write a figure, or a dash where there is none."""
+    return "-" if value is None or math.isnan(value) else f"{value:.{digits}f}"
+
+
+def signed(value: float, digits: int) -> str:
+    """Write a figure with its sign, zero without one, or a dash where there is none.
+
+    >>> signed(0.31, 2), signed(-0.004, 2)
+    ('+0.31', '0.00')
+    """
+    if math.isnan(value):
+        return "-"
+    text = f"{value:+.{digits}f}"
+    return text if text.strip("+-0.") else text.lstrip("+-")

@@ -3,20 +3,24 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Sequence
 
 import numpy as np
 
-from layout.files.columns import align
+from layout.files.columns import align, figure, signed
+from layout.files.pitch_page import write_pitch
 from layout.files.plan_json import along_lane_mm
+from layout.files.wood_page import write_wood
 from layout.findings import Finding
 from layout.instrument import MultiScale
 from layout.plan.laying import outer_strings
-from layout.plan.model import Plan, Worst
+from layout.plan.model import Plan
 from layout.units import MM_PER_INCH, NEWTON_PER_POUND_FORCE, write_sixty_fourths
 
-FRETS_PER_BLOCK = 12
-"""Columns of the error table before it wraps."""
+MOST_ALIKE = 3
+"""Findings of one kind that are told one by one."""
+
+STRAIGHT_MM = 0.005
+"""Crown points closer to a line than this are said to lie on it."""
 
 CAUTIONS = (
     "Strings under load break and whip: wear eye protection; a computed load is never a promise.",
@@ -33,11 +37,10 @@ def render_page(plan: Plan, *, inch: bool = False) -> str:
         _strings(plan),
         _nut_and_saddle(plan),
         _frets(plan, inch=inch),
-        _errors(plan),
-        _ladder(plan),
-        _clash(plan),
+        *write_wood(plan),
+        *write_pitch(plan),
         _assumed(plan),
-        _findings(plan.findings),
+        _findings(plan),
         "CAUTIONS\n" + "\n".join(f"  - {caution}" for caution in CAUTIONS),
     ]
     return "\n\n".join(part for part in parts if part) + "\n"
@@ -97,14 +100,14 @@ def _strings(plan: Plan) -> str:
             [
                 str(index + 1),
                 f"{loads.hz[index]:.2f} Hz" if string.note is None else str(string.note),
-                _figure(string.gauge_mm, 3),
-                _figure(plan.strings.scale_mm[index], 3),
-                _figure(plan.speaking_mm[index], 3),
-                _figure(plan.height_at_nut_mm[index], 2),
-                _figure(plan.height_at_saddle_mm[index], 2),
-                _figure(tension, 1),
-                _figure(tension / NEWTON_PER_POUND_FORCE, 2),
-                _figure(loads.share_of_break[index], 2),
+                figure(string.gauge_mm, 3),
+                figure(plan.strings.scale_mm[index], 3),
+                figure(plan.speaking_mm[index], 3),
+                figure(plan.height_at_nut_mm[index], 2),
+                figure(plan.height_at_saddle_mm[index], 2),
+                figure(tension, 1),
+                figure(tension / NEWTON_PER_POUND_FORCE, 2),
+                figure(loads.share_of_break[index], 2),
             ]
         )
     text = "STRINGS (heights are over the plane of the crowns; string 1 is outermost treble)\n"
@@ -123,22 +126,35 @@ def _strings(plan: Plan) -> str:
 
 def _nut_and_saddle(plan: Plan) -> str:
     ends, fit = plan.ends, plan.instrument.nut.fit
-    column = "file back" if fit == "trim" else "reaches over"
-    amounts = ends.file_back_mm if fit == "trim" else ends.overhang_mm
+    both = {"file back": ends.file_back_mm, "reaches over": ends.overhang_mm}
+    usual = "file back" if fit == "trim" else "reaches over"
+    columns = [name for name, amounts in both.items() if name == usual or amounts.any()]
     rows = [
-        [str(index + 1), _signed(ends.nut_shift_mm[index], 3), _figure(amounts[index], 3),
-         _signed(ends.setback_mm[index], 3)]
+        [
+            str(index + 1),
+            signed(ends.nut_shift_mm[index], 3),
+            *(figure(both[name][index], 3) for name in columns),
+            signed(ends.setback_mm[index], 3),
+        ]
         for index in range(len(plan.instrument.strings))
-    ]  # fmt: skip
+    ]
+    shifted = any(amounts.any() for amounts in both.values())
     text = "NUT AND SADDLE, mm along each string (nut shift + toward the saddle, setback + away)\n"
-    text += align(["string", "nut shift", column, "setback"], rows)
-    text += f"\n  {_nut_end(plan, shifted=bool(np.any(amounts)))}"
+    text += align(["string", "nut shift", *columns, "setback"], rows)
+    text += f"\n  {_nut_end(plan, shifted=shifted)}"
     strip = ends.strip
-    if strip is not None and np.any(ends.setback_mm):
+    if strip is not None and np.any(ends.setback_mm) and strip.width_mm < STRAIGHT_MM:
+        text += (
+            f"\n  The saddle's crown points lie on one straight line, crossing the centre line at "
+            f"{strip.at_centre_mm:.2f} mm, {math.degrees(strip.slant):+.2f} degrees off square "
+            "(+: treble end further from the nut)"
+        )
+    elif strip is not None and np.any(ends.setback_mm):
         text += (
             f"\n  Narrowest saddle strip holding every crown point: {strip.width_mm:.2f} mm wide, "
             f"crossing the centre line at {strip.at_centre_mm:.2f} mm, "
-            f"{math.degrees(strip.slant):+.2f} degrees off square"
+            f"{math.degrees(strip.slant):+.2f} degrees off square (+: treble end further from the "
+            "nut)"
         )
     if plan.instrument.bridge.kind == "loose":
         first, last = outer_strings(plan.instrument)
@@ -165,110 +181,50 @@ def _nut_end(plan: Plan, *, shifted: bool) -> str:
             "edge of the nut is filed back from that face."
         )
     return (
-        f"By overhang: the board ends at {face:.3f} mm and the strings' edges of the nut reach "
-        "over it."
+        f"By overhang: the board ends at {face:.3f} mm; the strings' edges of the nut reach over "
+        "it, or are filed back where the shift is smaller."
     )
 
 
 def _frets(plan: Plan, *, inch: bool) -> str:
     header = ["fret", "centre", "treble string", "bass string", "slot from", "slot to"]
     if isinstance(plan.instrument.scale, MultiScale):
-        header.append("angle")
+        header.append("angle*")
     if inch:
         header += ["inch", "nearest 1/64", "left over mm"]
     header.append("step (check only)")
     first, last = outer_strings(plan.instrument)
     points = plan.strings.points(plan.frets.met_mm)
     rows, before = [], 0.0
+    if plan.zero_fret is not None:
+        half = plan.cut.finished_mm / (2 * math.cos(plan.strings.nut_line.angle))
+        zero = ["0", *[figure(0.0, 3)] * 3, figure(-half, 3), figure(half, 3)]
+        rows.append([*zero, *[""] * (len(header) - len(zero))])
     for index, label in enumerate(plan.instrument.frets.labels):
         line = plan.frets.line(index + 1)
         at = line.at_centre_mm
         half = plan.cut.finished_mm / (2 * math.cos(line.angle))
         row = [
             label,
-            _figure(at, 3),
-            _figure(along_lane_mm(plan, first, points[first, index]), 3),
-            _figure(along_lane_mm(plan, last, points[last, index]), 3),
-            _figure(at - half, 3),
-            _figure(at + half, 3),
+            figure(at, 3),
+            figure(along_lane_mm(plan, first, points[first, index]), 3),
+            figure(along_lane_mm(plan, last, points[last, index]), 3),
+            figure(at - half, 3),
+            figure(at + half, 3),
         ]
         if isinstance(plan.instrument.scale, MultiScale):
-            row.append(_signed(math.degrees(line.angle), 3))
+            row.append(signed(math.degrees(line.angle), 3))
         if inch:
             nearest, rest = write_sixty_fourths(at)
-            row += [f"{at / MM_PER_INCH:.4f}", nearest, _signed(rest, 3)]
-        rows.append([*row, _figure(at - before, 3)])
+            row += [f"{at / MM_PER_INCH:.4f}", nearest, signed(rest, 3)]
+        rows.append([*row, figure(at - before, 3)])
         before = at
+    slanted = isinstance(plan.instrument.scale, MultiScale)
     return (
         "FRETS, mm from zero: mark each from zero, never from the fret before; slot edges on the "
-        f"centre line, {plan.cut.finished_mm:.3f} mm wide as cut\n" + align(header, rows)
-    )
-
-
-def _errors(plan: Plan) -> str:
-    pitch = plan.pitch
-    if pitch is None:
-        return ""
-    labels = plan.instrument.frets.labels
-    text = "ERRORS in cents, sharp positive, as planned"
-    for start in range(0, len(labels), FRETS_PER_BLOCK):
-        block = slice(start, start + FRETS_PER_BLOCK)
-        rows = [
-            [str(index + 1), *(_signed(value, 1) for value in row[block])]
-            for index, row in enumerate(pitch.error_cents)
-        ]
-        text += "\n" + align(["string", *labels[block]], rows)
-    compensation = plan.instrument.compensation
-    first, last = (labels[n - 1] for n in (compensation.first_fret, compensation.last_fret))
-    text += (
-        f"\n  Over frets {first} to {last}: rms {pitch.rms_cents:.2f}, worst "
-        f"{_worst(pitch.worst, labels)}"
-        f"\n  Over every fret: rms {pitch.rms_all_cents:.2f}, worst "
-        f"{_worst(pitch.worst_all, labels)}"
-        "\n  Left out: resonance of body and neck (several cents on some notes), roundness of the"
-        "\n  crown (under 0.5), loudness (2 to 6, decays), warmth (-1 to -3 a kelvin until retuned)"
-    )
-    return text
-
-
-def _worst(worst: Worst, labels: Sequence[str]) -> str:
-    return f"{worst.cents:+.2f} on string {worst.string} at fret {labels[worst.fret - 1]}"
-
-
-def _ladder(plan: Plan) -> str:
-    if plan.pitch is None:
-        return ""
-    rows = [
-        [rung.nut, rung.saddle, f"{rung.rms_cents:.2f}", f"{rung.worst_cents:.2f}", ""]
-        for rung in plan.pitch.ladder
-    ]
-    chosen = plan.instrument.compensation
-    rows.append(
-        [
-            chosen.nut if isinstance(chosen.nut, str) else "as listed",
-            chosen.saddle if isinstance(chosen.saddle, str) else "as listed",
-            f"{plan.pitch.rms_cents:.2f}",
-            f"{abs(plan.pitch.worst.cents):.2f}",
-            "<- this plan",
-        ]
-    )
-    return "CHOICES of nut and saddle, error left in cents\n" + align(
-        ["nut", "saddle", "rms", "worst", ""], rows, left=2
-    )
-
-
-def _clash(plan: Plan) -> str:
-    heard = [clash for clash in plan.clash if clash.spread_cents > 1e-6]
-    if not heard:
-        return ""
-    labels = plan.instrument.frets.labels
-    rows = [
-        [labels[clash.fret - 1], f"{clash.spread_cents:.2f}", f"{clash.spread_mm:.2f}"]
-        for clash in heard
-    ]
-    return (
-        "CLASH: how far the strings disagree about a straight fret, before compensation\n"
-        + align(["fret", "cents", "mm"], rows)
+        f"centre line, {plan.cut.finished_mm:.3f} mm wide as cut\n"
+        + align(header, rows)
+        + ("\n  *degrees off square, + when the treble end is nearer the bridge" if slanted else "")
     )
 
 
@@ -279,18 +235,19 @@ def _assumed(plan: Plan) -> str:
     return "ASSUMED, because the job does not say\n" + align(["key", "value"], rows, left=2)
 
 
-def _findings(findings: Sequence[Finding]) -> str:
-    if not findings:
+def _findings(plan: Plan) -> str:
+    """Write every finding; many of one kind are told once, by the largest, with their frets."""
+    if not plan.findings:
         return "FINDINGS\n  none"
-    return "FINDINGS\n" + "\n".join(f"  {write_finding(finding)}" for finding in findings)
-
-
-def _figure(value: float | None, digits: int) -> str:
-    return "-" if value is None or math.isnan(value) else f"{value:.{digits}f}"
-
-
-def _signed(value: float, digits: int) -> str:
-    if math.isnan(value):
-        return "-"
-    text = f"{value:+.{digits}f}"
-    return text if text.strip("+-0.") else text.lstrip("+-")
+    lines = []
+    kinds = dict.fromkeys((finding.code, finding.severity) for finding in plan.findings)
+    for code, severity in kinds:
+        alike = [f for f in plan.findings if (f.code, f.severity) == (code, severity)]
+        frets = [f.fret for f in alike if f.fret is not None]
+        if len(alike) <= MOST_ALIKE or len(frets) < len(alike):
+            lines += [f"  {write_finding(finding)}" for finding in alike]
+            continue
+        largest = max(alike, key=lambda finding: abs(finding.amount or 0.0))
+        labels = [plan.instrument.frets.labels[fret - 1] for fret in dict.fromkeys(frets)]
+        lines.append(f"  {write_finding(largest)} The same at frets {', '.join(labels)}.")
+    return "FINDINGS\n" + "\n".join(lines)

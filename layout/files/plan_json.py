@@ -12,7 +12,9 @@ from numpy.typing import NDArray
 from layout import __version__
 from layout.geometry.board import Edge
 from layout.geometry.cross import CrossLine
+from layout.plan.depth import describe_top, sink_slots, write_top_rule
 from layout.plan.laying import outer_strings
+from layout.plan.leaving import Left, crown_height_mm, measure_left
 from layout.plan.model import Pitch, Plan, Worst
 
 Array = NDArray[np.float64]
@@ -29,6 +31,8 @@ def render_plan_json(plan: Plan) -> bytes:
 def describe_plan(plan: Plan) -> dict[str, Any]:
     """Describe the plan with plain numbers, texts, lists and mappings."""
     instrument = plan.instrument
+    left = measure_left(plan)
+    depths = {slot.piece.fret: slot.floor.at_centre_mm for slot in sink_slots(plan)}
     return {
         "format": FORMAT,
         "title": instrument.title,
@@ -36,7 +40,10 @@ def describe_plan(plan: Plan) -> dict[str, Any]:
         "version": __version__,
         "job_sha256": instrument.job_sha256,
         "strings": [_string(plan, index) for index in range(len(instrument.strings))],
-        "frets": [_fret(plan, fret) for fret in range(1, instrument.frets.count + 1)],
+        "frets": [
+            _fret(plan, fret, depth=depths.get(fret), left=left)
+            for fret in range(1, instrument.frets.count + 1)
+        ],
         "board": _board(plan),
         "saddle_strip": _saddle_strip(plan),
         "tension_total_n": _number(plan.loads.total_n),
@@ -82,6 +89,7 @@ def _table(values: Array) -> list[list[float | None]]:
 
 def _string(plan: Plan, index: int) -> dict[str, Any]:
     string, loads, ends = plan.instrument.strings[index], plan.loads, plan.ends
+    crown = crown_height_mm(plan)
     return {
         "number": index + 1,
         "note": None if string.note is None else str(string.note),
@@ -90,6 +98,7 @@ def _string(plan: Plan, index: int) -> dict[str, Any]:
         "unit_mass_g_per_m": _number(1000 * loads.unit_mass_kg_per_m[index]),
         "axial_stiffness_n": _number(loads.axial_stiffness_n[index]),
         "bending_stiffness_n_m2": _number(loads.bending_stiffness_n_m2[index]),
+        "bending_stiffness_n_mm2": _number(1e6 * loads.bending_stiffness_n_m2[index]),
         "tension_n": _number(loads.tension_n[index]),
         "tension_share_of_break": _number(loads.share_of_break[index]),
         "scale": _number(plan.strings.scale_mm[index]),
@@ -104,10 +113,12 @@ def _string(plan: Plan, index: int) -> dict[str, Any]:
         "speaking_length": _number(plan.speaking_mm[index]),
         "height_at_nut": _number(plan.height_at_nut_mm[index]),
         "height_at_saddle": _number(plan.height_at_saddle_mm[index]),
+        "height_over_board_at_nut": _number(plan.height_at_nut_mm[index] + crown),
+        "height_over_board_at_saddle": _number(plan.height_at_saddle_mm[index] + crown),
     }
 
 
-def _fret(plan: Plan, fret: int) -> dict[str, Any]:
+def _fret(plan: Plan, fret: int, *, depth: float | None, left: Left) -> dict[str, Any]:
     index = fret - 1
     line = plan.frets.line(fret)
     pieces = plan.pieces_of(fret)
@@ -129,7 +140,10 @@ def _fret(plan: Plan, fret: int) -> dict[str, Any]:
         },
         "angle": _number(math.degrees(line.angle)),
         "slot_edges": [_number(line.at_centre_mm - half), _number(line.at_centre_mm + half)],
+        "depth": _number(depth),
         "wire_length": _number(sum(piece.wire_mm for piece in pieces)),
+        "left_mm": [_number(value) for value in left.mm[:, index]],
+        "left_cents": [_number(value) for value in left.cents[:, index]],
         "strings": [int(i) + 1 for i in np.flatnonzero(plan.frets.served[:, index])],
         "pieces": [[_point(piece.treble_mm), _point(piece.bass_mm)] for piece in pieces],
     }
@@ -160,6 +174,17 @@ def _board(plan: Plan) -> dict[str, Any]:
         "bridge_at_centre": _number(plan.strings.bridge_line.at_centre_mm),
         "bridge_angle": _number(math.degrees(plan.strings.bridge_line.angle)),
         "face": _number(plan.ends.face_mm),
+        "top": write_top_rule(plan),
+        "top_places": [
+            {
+                "place": place.name,
+                "x": _number(place.x_mm),
+                "radius": None if plan.surface.flat else _number(place.radius_mm),
+                "edge_drop": _number(place.drop_mm),
+                "edge_thickness": _number(place.thickness_left_mm),
+            }
+            for place in describe_top(plan)
+        ],
         "slot_width_finished": _number(plan.cut.finished_mm),
     }
 

@@ -119,7 +119,9 @@ def lay_frets(
     """
     voting = votes > 0
     rows = np.where(voting, votes, 0.0)
-    lone = voting.sum(axis=0) == 1
+    y = np.where(voting, strings.nut_mm[:, 1:], 0.0)
+    outermost = np.where(voting, y, -np.inf).max(axis=0), np.where(voting, y, np.inf).min(axis=0)
+    lone = outermost[0] - outermost[1] <= 0  # one string, or all of them down one line
     slanted = free & ~lone
     slope = np.where(lone, strings.nut_line.slope, square_slope) * np.ones(own_mm.shape[1])
     start = strings.points(np.where(voting, own_mm, 0.0))

@@ -101,11 +101,31 @@ def _routed(width: float, tooling: Tooling) -> SlotCut:
     return SlotCut(width + tooling.runout_mm, width, cutter / 2, centre_line=True)
 
 
-def run_slot(slots: Slots, treble_mm: Array, bass_mm: Array) -> tuple[Array, Array]:
-    """Give a slot's ends as cut: past the finished edges when open, short of them when blind."""
-    way = (treble_mm - bass_mm) / np.hypot(*(treble_mm - bass_mm))
+def run_slot(
+    slots: Slots,
+    treble_mm: Array,
+    bass_mm: Array,
+    *,
+    at_edge: tuple[bool, bool] = (True, True),
+) -> tuple[Array, Array]:
+    """Give a slot's ends as cut: past the finished edges when open, short of them when blind.
+
+    ``at_edge`` says of the treble and the bass end whether it lies on a finished edge: a partial
+    fret ends inside the board, and there its slot ends with it.
+
+    Raises
+    ------
+    ValueError
+        When a blind slot has no length left.
+
+    """
+    length = np.hypot(*(treble_mm - bass_mm))
+    way = (treble_mm - bass_mm) / length
     reach = slots.past_edge_mm if slots.run == "open" else -slots.short_of_edge_mm
-    return treble_mm + reach * way, bass_mm - reach * way
+    at_treble, at_bass = (reach if edge else 0.0 for edge in at_edge)
+    if length + at_treble + at_bass <= 0:
+        raise ValueError("a blind slot has no length left")
+    return treble_mm + at_treble * way, bass_mm - at_bass * way
 
 
 def outline_slot(

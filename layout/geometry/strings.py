@@ -181,6 +181,8 @@ def _fan_lines(
     if outer[0] == outer[1]:
         raise _impossible("scale", "a multi-scale board needs two strings that reach the nut")
     y_n, y_b = nut_y[outer], bridge_y[outer]
+    if y_n[0] <= y_n[1] or y_b[0] <= y_b[1]:
+        raise _impossible("spread", "a multi-scale board needs outer strings that lie apart")
     L = np.array([scale.treble_mm, scale.bass_mm])  # noqa: N806  the legend's letter
     squared = L**2 - (y_b - y_n) ** 2
     if (squared <= 0).any():

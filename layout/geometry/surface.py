@@ -134,6 +134,9 @@ def _coefficients(
         full = np.flatnonzero(strings.full)
         first, last = int(full[0]), int(full[-1])
         spread = [strings.y_at(first, x) - strings.y_at(last, x) for x in (0.0, 1.0)]
+        if spread[0] <= 0:
+            apart = "the cone lies under strings that lie apart at the nut"
+            raise JobError([Fault("job", None, "board.radius", "cone_at_nut", apart)])
         return (rule.radius_mm, rule.radius_mm * (spread[1] / spread[0] - 1), 0.0)
     # level edges: R = (w^2/4 + d^2)/(2 d), w = w0 + w1 x the finished width, d the edge drop
     tail = board.tail_end.at_centre_mm

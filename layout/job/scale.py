@@ -158,6 +158,8 @@ def _by_rule(table: Table, nut: Cursor, saddle: Cursor, places: Places) -> Sprea
         if value == 0 and several:
             cursor.fault("strings lie apart")
     rule = table.word("rule", RULES, default="centres")
+    if places.strings and has_courses(places.strings):
+        table.reading.assume("spread", "courses: equal clear space between them, whatever the rule")
     pair = _pair(table, places)
     _doubt_gauges(table, places, rule=rule)
     if nut_mm is None or saddle_mm is None:
@@ -169,6 +171,8 @@ def _pair(table: Table, places: Places) -> tuple[float | None, float | None]:
     """Read the clear gap inside a course, at nut and saddle."""
     cursor = table.at("pair")
     if cursor is None:
+        if places.strings and not places.faulty and has_courses(places.strings):
+            table.wrong("courses need the clear gap between their strings", "write pair: 2")
         return None, None
     if places.strings and not places.faulty and not has_courses(places.strings):
         cursor.wrong("a pair gap needs courses", "give the strings of a course the same course")

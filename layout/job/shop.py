@@ -36,7 +36,7 @@ LAYERS = (
 )  # fmt: skip
 """Layers of the drawings (drawings page)."""
 
-_LAYER_NAME = re.compile(r"[A-Z0-9_-]{1,31}")
+_LAYER_NAME = re.compile(r"[A-Z_][A-Z0-9_-]{0,30}")
 """What every reader of drawings takes: 31 characters is the limit of the oldest format."""
 
 
@@ -229,7 +229,9 @@ def _layer_name(cursor: Cursor) -> str | None:
     if _LAYER_NAME.fullmatch(raw):
         return raw
     remedy = f"write {raw.upper()}" if _LAYER_NAME.fullmatch(raw.upper()) else ""
-    cursor.fault("a layer's name is 1 to 31 of A to Z, 0 to 9, _ and -", remedy)
+    cursor.fault(
+        "a layer's name starts with a letter and is up to 31 of A to Z, 0 to 9, _ and -", remedy
+    )
     return None
 
 

@@ -161,7 +161,7 @@ def _measured(
     if value is None or cursor.within(value * per_unit, allowed) is None:
         return None
     if (cursor.raw or " ").strip()[-1].isdigit():
-        table.reading.assume(cursor.path, f"{cursor.raw} read as {bare}")
+        table.reading.assume(cursor.path, f"a bare figure is read in {bare}")
     return value
 
 

@@ -8,7 +8,7 @@ from __future__ import annotations
 from collections.abc import Iterator
 from dataclasses import dataclass
 
-from layout.findings import Finding
+from layout.findings import Finding, Severity
 from layout.job.tree import ListNode, Node, TableNode, TextNode
 
 
@@ -26,6 +26,8 @@ class Undrawn:
         The values that count; empty for all of them.
     unless
         A path and value that give the key its effect already.
+    severity
+        A warning where ignoring the key would spoil the wood.
 
     """
 
@@ -33,31 +35,25 @@ class Undrawn:
     what: str
     values: tuple[str, ...] = ()
     unless: tuple[str, str] | None = None
+    severity: Severity = "note"
 
 
 UNDRAWN = (
-    Undrawn("strings.starts_at", "the step of the board's edge before a short string"),
-    Undrawn("strings.open_only", "strings that run beside the board", ("true",)),
-    Undrawn("frets.kind", "loops and stop lines in place of slots", ("tied", "lines")),
-    Undrawn("frets.placing", "stops laid by their predicted pitch", ("straight", "each")),
-    Undrawn("frets.only", "partial frets"),
-    Undrawn("bridge", "the pieces or the printed place of the bridge", ("loose", "separate")),
-    Undrawn("bridge.separate", "the travel of the bridge pieces"),
-    Undrawn("nut.seat", "the channel behind the nut", ("channel",)),
-    Undrawn("nut.thickness", "the nut's own sheet", unless=("nut.zero", "fret")),
-    Undrawn("board.blank", "knife marks on the square blank"),
-    Undrawn("wire.stick", "the cutting list of fretwire"),
-    Undrawn("wire.over", "the cutting list of fretwire"),
-    Undrawn("slots.floor", "the floors of the slots", ("follow",)),
-    Undrawn("slots.clearance", "the depth of the slots"),
-    Undrawn("tooling.lines", "outlines drawn inward by half the kerf", ("offset",)),
-    Undrawn("marks", "position marks"),
-    Undrawn("pins", "locating pins"),
+    Undrawn(
+        "frets.kind",
+        "loops of gut, and marks and ratios of unfretted boards; stops are scribed",
+        ("tied", "lines"),
+        severity="warning",
+    ),
+    Undrawn(
+        "frets.placing",
+        "stops laid by their predicted pitch",
+        ("straight", "each"),
+        severity="warning",
+    ),
     Undrawn("loops", "the gut of tied frets"),
     Undrawn("tape", "marker tape"),
     Undrawn("stops", "neck stop and body stop in words"),
-    Undrawn("template", "the notched slotting template"),
-    Undrawn("paper", "the paper template"),
 )
 
 
@@ -72,7 +68,7 @@ def find_undrawn(root: Node) -> Iterator[Finding]:
             continue
         yield Finding(
             "not-drawn-yet",
-            "note",
+            row.severity,
             f"{row.path} is read and checked, but this version does not draw what it asks for: "
             f"{row.what}. Lay that out by hand, or leave the key out.",
         )

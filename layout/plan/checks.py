@@ -1,12 +1,9 @@
-"""What is doubtful about a plan? Each check looks at one question and may raise findings.
-
-To add one: write a function ``Plan -> Iterator[Finding]`` and list it in ``CHECKS``.
-"""
+"""What is doubtful about strings, frets and board? Each check looks at one question."""
 
 from __future__ import annotations
 
 import math
-from collections.abc import Callable, Iterator
+from collections.abc import Iterator
 
 import numpy as np
 
@@ -17,9 +14,6 @@ from layout.plan.model import Plan
 
 TANG_SQUEEZE_MM = (0.03, 0.08)
 """Normal excess of the finished slot over the tang (geometry page, Slots)."""
-
-LEAST_WOOD_MM = 1.5
-"""Least wood that must remain under a slot (geometry page, Slots)."""
 
 NEAREST_EDGE_MM = 1.5
 """Least clear wood beside an outer string; common practice, no source."""
@@ -42,11 +36,6 @@ DEAREST_LIMIT_CENTS = 0.01
 CLASH_NOTE_CENTS = 1e-6
 CLASH_WARNING_CENTS = 5.0
 """Clash from which a straight fret is heard as wrong (physics page, hearing: about 5 cents)."""
-
-
-def find_doubts(plan: Plan) -> tuple[Finding, ...]:
-    """Run every check, in the order a maker would ask."""
-    return tuple(finding for check in CHECKS for finding in check(plan))
 
 
 def _slot_and_cutter(plan: Plan) -> Iterator[Finding]:
@@ -90,35 +79,6 @@ def _tang(plan: Plan) -> Iterator[Finding]:
             f"The finished slot is {excess:+.3f} mm against the tang; {low} to {high} mm is "
             f"normal. Narrow the slot, or plan to glue the frets.{because}",
             amount=excess,
-            unit="mm",
-        )
-
-
-def _wood_under_slots(plan: Plan) -> Iterator[Finding]:
-    """Both floors lie deepest at the lower end of a slot: there the least wood is left."""
-    job = plan.instrument
-    tang = job.wire.tang_depth_mm
-    if tang is None or not plan.pieces:
-        return
-    blind = job.slots.run == "blind"
-    ends = [
-        (piece.fret, end)
-        for piece in plan.pieces
-        for end in (
-            (piece.cut_treble_mm, piece.cut_bass_mm) if blind else (piece.treble_mm, piece.bass_mm)
-        )
-    ]
-    top = [float(plan.surface.height_mm(x, y)) for _, (x, y) in ends]
-    lowest = int(np.argmin(top))
-    left = job.board.thickness_mm + top[lowest] - tang - job.slots.clearance_mm
-    if left < LEAST_WOOD_MM - 1e-9:
-        yield Finding(
-            "little-wood-under-slot",
-            "error" if left <= 0 else "warning",
-            f"{max(left, 0.0):.2f} mm of wood is left under the slots at fret {ends[lowest][0]}; "
-            f"at least {LEAST_WOOD_MM} mm must remain. Take a thicker board or a shorter tang.",
-            fret=ends[lowest][0],
-            amount=left,
             unit="mm",
         )
 
@@ -254,7 +214,7 @@ def _near_breaking(plan: Plan) -> Iterator[Finding]:
         if share > HIGHEST_SHARE_OF_BREAK:
             yield Finding(
                 "near-breaking-load",
-                "warning",
+                "error" if share >= 1 else "warning",
                 f"String {index + 1} is tuned to {share:.2f} of the least breaking load of its "
                 "core. Take a thinner string, a lower note or a shorter scale; wear eye "
                 "protection while tuning.",
@@ -291,13 +251,14 @@ def _strip(plan: Plan) -> Iterator[Finding]:
 
 def _clash(plan: Plan) -> Iterator[Finding]:
     for clash in plan.clash:
-        if clash.spread_cents > CLASH_NOTE_CENTS:
+        favoured = clash.fret in plan.instrument.frets.favour
+        if clash.spread_cents > CLASH_NOTE_CENTS and not favoured:
             yield Finding(
                 "strings-disagree",
                 "warning" if clash.spread_cents > CLASH_WARNING_CENTS else "note",
                 f"The strings ask for fret {clash.fret} at places {clash.spread_mm:.2f} mm "
                 f"({clash.spread_cents:.1f} cents) apart; one straight fret serves them between. "
-                "Favour one pitch, split the fret, or take another temperament.",
+                "Favour one pitch, or take another temperament.",
                 fret=clash.fret,
                 amount=clash.spread_cents,
                 unit="cents",
@@ -323,12 +284,9 @@ def _claims(plan: Plan) -> Iterator[Finding]:
     )
 
 
-Check = Callable[[Plan], Iterator[Finding]]
-
-CHECKS: tuple[Check, ...] = (
+STRING_CHECKS = (
     _slot_and_cutter,
     _tang,
-    _wood_under_slots,
     _nut_shift_at_zero_fret,
     _strings_too_close,
     _string_near_edge,
@@ -340,4 +298,4 @@ CHECKS: tuple[Check, ...] = (
     _clash,
     _claims,
 )
-"""Every check, in the order its findings are printed."""
+"""These checks, in the order their findings are printed."""

@@ -7,6 +7,7 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
+from layout.errors import NoSolutionError
 from layout.geometry.cross import line_through
 from layout.instrument import CompensationRule, Instrument, PerString, Sides
 from layout.plan.laying import Laid, courses, outer_strings
@@ -51,7 +52,6 @@ class _Strung:
     sounding: Sounding
     fretted: Mask
     weights: Array
-    balanced: Mask
     none_mm: Array
 
     def solve(self, nut: Move, saddle: Move, *, strip_mm: float | None) -> Compensation:
@@ -102,9 +102,9 @@ def compensate(instrument: Instrument, laid: Laid, sounding: Sounding) -> Compen
     about pitch.
     """
     fretted = np.array([string.fretted for string in instrument.strings])
-    weights, balanced = _balance(instrument, laid)
+    weights = _balance(instrument, laid)
     none_mm = unmoved_nut_mm(instrument)
-    strung = _Strung(instrument, laid, sounding, fretted, weights, balanced, none_mm)
+    strung = _Strung(instrument, laid, sounding, fretted, weights, none_mm)
     rules = instrument.compensation
     # A zero fret holds every string at zero, whatever is asked of the nut behind it.
     nut = none_mm if instrument.nut.zero == "fret" else _nut_move(rules.nut, instrument, laid)
@@ -149,14 +149,13 @@ def unmoved_nut_mm(instrument: Instrument) -> Array:
     )
 
 
-def _balance(instrument: Instrument, laid: Laid) -> tuple[Array, Mask]:
-    """Weights of every stop, 0 where it is not balanced, and which stops are; (S, F) each."""
+def _balance(instrument: Instrument, laid: Laid) -> Array:
+    """Weights of every stop, 0 where it is not balanced, shape (S, F)."""
     rules = instrument.compensation
     number = np.arange(1, instrument.frets.count + 1)
     within = (number >= rules.first_fret) & (number <= rules.last_fret)
     weight = np.array([rules.weights.get(int(fret), 1.0) for fret in number])
-    balanced = laid.served & within
-    return np.where(balanced, weight, 0.0), balanced
+    return np.where(laid.served & within, weight, 0.0)
 
 
 def _nut_move(rule: CompensationRule | PerString, instrument: Instrument, laid: Laid) -> Move:
@@ -216,12 +215,21 @@ def _climb(strung: _Strung) -> tuple[Rung, ...]:
     for nut, saddle in LADDER:
         if nut == "each" and strung.instrument.nut.zero == "fret":
             continue
+        rungs.append(_rung(strung, nut, saddle))
+    return tuple(rungs)
+
+
+def _rung(strung: _Strung, nut: CompensationRule, saddle: CompensationRule) -> Rung:
+    """One choice; nan where the strings have no such answer, so that the others still stand."""
+    try:
         solved = strung.solve(nut, saddle, strip_mm=None)
         stopped = strung.predict(solved.nut_shift_mm, solved.setback_mm)
-        error = stopped.cents - strung.laid.target_cents[strung.fretted]
-        chosen = error[strung.balanced[strung.fretted]]
-        rungs.append(Rung(nut, saddle, _rms(chosen), float(np.max(np.abs(chosen), initial=0.0))))
-    return tuple(rungs)
+    except NoSolutionError:
+        return Rung(nut, saddle, float("nan"), float("nan"))
+    error = stopped.cents - strung.laid.target_cents[strung.fretted]
+    weights = strung.weights[strung.fretted]
+    worst = np.max(np.abs(error[weights > 0]), initial=0.0)
+    return Rung(nut, saddle, _rms(error, weights), float(worst))
 
 
 def _pitch(strung: _Strung, stopped: Stopped, ladder: tuple[Rung, ...]) -> Pitch:
@@ -230,12 +238,12 @@ def _pitch(strung: _Strung, stopped: Stopped, ladder: tuple[Rung, ...]) -> Pitch
     predicted = _scattered(stopped.cents, fretted, np.nan)
     error = predicted - target
     parts = split_error(stopped, target[fretted])
-    heard = np.where(strung.balanced, error, np.nan)
+    heard = np.where(strung.weights > 0, error, np.nan)
     return Pitch(
         target_cents=target,
         predicted_cents=predicted,
-        rms_cents=_rms(heard),
-        rms_all_cents=_rms(error),
+        rms_cents=_rms(error, strung.weights),
+        rms_all_cents=_rms(error, np.ones_like(error)),
         worst=_worst(heard),
         worst_all=_worst(error),
         ladder=ladder,
@@ -246,9 +254,12 @@ def _pitch(strung: _Strung, stopped: Stopped, ladder: tuple[Rung, ...]) -> Pitch
     )
 
 
-def _rms(error: Array) -> float:
-    known = error[np.isfinite(error)]
-    return float(np.sqrt(np.mean(known**2))) if known.size else 0.0
+def _rms(error: Array, weights: Array) -> float:
+    """Weighted root of the mean square, over stops of weight above 0."""
+    known = np.isfinite(error) & (weights > 0)
+    if not known.any():
+        return 0.0
+    return float(np.sqrt(np.average(error[known] ** 2, weights=weights[known])))
 
 
 def _worst(error: Array) -> Worst:

@@ -6,7 +6,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from layout.errors import Fault, JobError
-from layout.geometry.board import BoardShape
+from layout.geometry.board import BoardShape, Edge
 from layout.geometry.slots import run_slot
 from layout.geometry.strings import StringLines
 from layout.geometry.surface import Surface
@@ -33,7 +33,8 @@ def cut_pieces(
         for first, last in _served_runs(instrument, laid, fret):
             treble = _end(instrument, laid, board, fret, string=first, toward=-1)
             bass = _end(instrument, laid, board, fret, string=last, toward=1)
-            cut_treble, cut_bass = run_slot(instrument.slots, treble, bass)
+            at_edge = (_meets_edge(board.treble, treble), _meets_edge(board.bass, bass))
+            cut_treble, cut_bass = _run(instrument, fret, treble, bass, at_edge=at_edge)
             wire = float(surface.curve_length_mm(bass, treble))
             pieces.append(Piece(fret, treble, bass, cut_treble, cut_bass, wire))
     return tuple(pieces)
@@ -48,9 +49,26 @@ def cut_zero_fret(
     treble, bass = (edge.crossing(laid.strings.nut_line) for edge in (board.treble, board.bass))
     assert treble is not None
     assert bass is not None
-    cut_treble, cut_bass = run_slot(instrument.slots, treble, bass)
+    cut_treble, cut_bass = _run(instrument, 0, treble, bass, at_edge=(True, True))
     wire = float(surface.curve_length_mm(bass, treble))
     return Piece(0, treble, bass, cut_treble, cut_bass, wire)
+
+
+def _run(
+    instrument: Instrument, fret: int, treble: Array, bass: Array, *, at_edge: tuple[bool, bool]
+) -> tuple[Array, Array]:
+    try:
+        return run_slot(instrument.slots, treble, bass, at_edge=at_edge)
+    except ValueError as error:
+        short = f"{instrument.slots.short_of_edge_mm:g} mm"
+        rule = f"the blind slot of fret {fret} has no length left"
+        fault = Fault("job", None, "slots.short_of_edge", short, rule, "end it nearer the edges")
+        raise JobError([fault]) from error
+
+
+def _meets_edge(edge: Edge, end: Array) -> bool:
+    """Whether a piece's end lies on a finished edge rather than between two strings."""
+    return abs(edge.y_at(float(end[0])) - float(end[1])) < 1e-6
 
 
 def _served_runs(instrument: Instrument, laid: Laid, fret: int) -> list[tuple[int, int]]:

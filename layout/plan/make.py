@@ -12,10 +12,10 @@ from layout.geometry.board import BoardShape, shape_board
 from layout.geometry.slots import choose_cut
 from layout.geometry.surface import shape_top
 from layout.instrument import Instrument
-from layout.plan.checks import find_doubts
 from layout.plan.clashing import measure_clash
 from layout.plan.compensating import Compensated, compensate, zero_offset_mm
 from layout.plan.cutting import cut_pieces, cut_zero_fret
+from layout.plan.doubts import find_doubts
 from layout.plan.laying import Laid, lay_out
 from layout.plan.model import Loads, NutAndSaddle, Plan
 from layout.plan.sounding import describe_strings

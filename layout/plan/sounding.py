@@ -11,6 +11,7 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
+from layout.errors import Fault, JobError
 from layout.findings import Assumed
 from layout.instrument import (
     ActionGaps,
@@ -149,7 +150,7 @@ def string_heights(instrument: Instrument, laid: Laid) -> tuple[Array, Array]:
         at_saddle = figure_per_string(given.saddle, instrument, nut_y)
     else:
         places = (laid.own_mm[:, given.first_fret - 1], laid.own_mm[:, given.second_fret - 1])
-        relief_from, relief_to = relief_span(instrument, laid)
+        relief_from, relief_to = relief_span(instrument, laid.own_mm)
         at_nut, at_saddle = heights_from_gaps(
             laid.strings.scale_mm,
             places_mm=places,
@@ -166,14 +167,14 @@ def string_heights(instrument: Instrument, laid: Laid) -> tuple[Array, Array]:
     return at_nut, at_saddle
 
 
-def relief_span(instrument: Instrument, laid: Laid) -> tuple[Array, Array]:
+def relief_span(instrument: Instrument, own_mm: Array) -> tuple[Array, Array]:
     """Give where relief begins and ends on every string, (S,) each; nan where there is none."""
     heights = instrument.heights
     joint = min(heights.joint if heights else 0, instrument.frets.count)
     if joint <= 1:
         nothing = np.full(len(instrument.strings), np.nan)
         return nothing, nothing
-    return laid.own_mm[:, 0], laid.own_mm[:, joint - 1]
+    return own_mm[:, 0], own_mm[:, joint - 1]
 
 
 @dataclass(frozen=True, slots=True)
@@ -184,6 +185,13 @@ class _Own:
     hz: float
     length_mm: float
 
+
+SOFT_MODULI = {
+    "nylon": "from a mean modulus of 5.5 GPa; published strings vary from 3.9 to 8.3",
+    "fluorocarbon": "from a mean modulus of 8.9 GPa; published strings vary from 5.6 to 13.4",
+    "gut": "from a modulus of 6.0 GPa, a string maker's figure; strings vary",
+}
+"""What is assumed of a soft string that nobody stretched (physics page, table of materials)."""
 
 _UNKNOWN = Section(float("nan"), float("nan"), float("nan"))
 
@@ -215,12 +223,11 @@ def _made(string: StringSpec, own: _Own, assumed: list[Assumed]) -> tuple[Sectio
         return _UNKNOWN, nothing
     if string.make == "plain":
         better = string.axial_stiffness_n, string.stretch, string.tension
-        if string.material in {"nylon", "fluorocarbon", "gut"} and better == (None, None, None):
+        if string.material in SOFT_MODULI and better == (None, None, None):
             assumed.append(
                 Assumed(
                     f"{own.path}.axial_stiffness",
-                    f"from a mean modulus of {string.material}, which varies by a third either way "
-                    "from string to string",
+                    SOFT_MODULI[string.material],
                 )
             )
         core = string.gauge_mm if string.material == "steel" else nothing
@@ -230,6 +237,10 @@ def _made(string: StringSpec, own: _Own, assumed: list[Assumed]) -> tuple[Sectio
         return _UNKNOWN, nothing
     if core_mm is None:
         core_mm = float(estimate_steel_core_mm(string.gauge_mm))
+        if core_mm >= string.gauge_mm:
+            rule = "a wound string this thin has no room for the estimated core"
+            gauge = f"{string.gauge_mm:g} mm"
+            raise JobError([Fault("job", None, f"{own.path}.gauge", gauge, rule, "give its core")])
         assumed.append(
             Assumed(f"{own.path}.core", f"{core_mm:.3f} mm (estimate: 0.24 mm + 0.148 x gauge)")
         )
@@ -259,6 +270,9 @@ def _by_tension(
         stated.newton, length, hz=hz, gauge_mm=string.gauge_mm or float("nan")
     )
     if np.isfinite(made.axial_stiffness_n) and _is_steel(string):
+        assumed.append(
+            Assumed(f"{own.path}.axial_stiffness", "from its steel; only the mass from the tension")
+        )
         return Section(
             ruled.unit_mass_kg_per_m, made.axial_stiffness_n, made.bending_stiffness_n_m2
         )
@@ -266,7 +280,10 @@ def _by_tension(
         assumed.append(Assumed(f"{own.path}.axial_stiffness", "50 x the stated tension"))
     if string.bending_stiffness_n_m2 is None and string.gauge_mm is not None:
         assumed.append(
-            Assumed(f"{own.path}.bending_stiffness", "axial stiffness x gauge squared / 16")
+            Assumed(
+                f"{own.path}.bending_stiffness",
+                "axial stiffness x gauge squared / 16; bending tests give about a third of it",
+            )
         )
     return ruled
 
@@ -362,7 +379,7 @@ def _lie(
     fretted: NDArray[np.bool_],
 ) -> StringLie:
     assert instrument.heights is not None
-    relief_from, relief_to = relief_span(instrument, laid)
+    relief_from, relief_to = relief_span(instrument, laid.own_mm)
     return StringLie(
         open_hz=hz[fretted],
         scale_mm=laid.strings.scale_mm[fretted],

@@ -20,7 +20,7 @@ from layout.instrument import (
     Wire,
 )
 from layout.pitch.notes import read_note
-from layout.plan.checks import find_doubts
+from layout.plan.doubts import find_doubts
 from layout.plan.make import make_plan
 
 
@@ -260,7 +260,7 @@ def test_findings_come_in_the_order_a_maker_asks(parlour):
     codes = list(dict.fromkeys(f.code for f in make_plan(job).findings))
     assert codes == [
         "slot-narrower-than-cutter",
-        "little-wood-under-slot",
         "string-near-edge",
         "no-claim-about-pitch",
+        "little-wood-under-slot",
     ]
