@@ -10,40 +10,37 @@ from collections.abc import Iterator
 import numpy as np
 from numpy.typing import NDArray
 
+from layout.drawing.board_marks import (
+    draw_blank,
+    draw_fret_labels,
+    draw_holes,
+    draw_line_names,
+    draw_string_names,
+)
+from layout.drawing.freeing import cut_free
+from layout.drawing.legend import MIRRORED, draw_legend, offsets_lines, say_lines, with_lettering
 from layout.drawing.moves import mirrored_shape
-from layout.drawing.reference import draw_check_bar, draw_origin_mark
+from layout.drawing.reference import draw_origin_mark
 from layout.drawing.shapes import (
     CUT_OUTLINE,
     CUT_POCKET,
     CUT_SLOT,
-    ENGRAVE_LABEL,
     REF_CENTRE,
     REF_LINE,
     REF_STRING,
-    Extents,
-    Lettering,
+    SCRIBE_STOP,
     Line,
     Outline,
     Point,
     Shape,
-    extents_of,
 )
 from layout.drawing.sheet import Sheet, make_sheet
 from layout.geometry.cross import CrossLine
 from layout.geometry.slots import outline_slot
 from layout.plan.model import Piece, Plan
 
-FIGURE_MM = 2.8
-TITLE_MM = 4.0
-NOTE_MM = 2.4
 CLEAR_MM = 3.0
-"""Space between slot ends and figures, and between lines of lettering."""
-
-LINE_MM = 4.4
-"""From one line of notes to the next."""
-
-BAR_FROM_MM = 200.0
-"""Where the check bar starts, clear of the notes."""
+"""Space between slot ends and figures."""
 
 BEYOND_MM = 12.0
 """How far the centre line runs past the nut end and the bridge."""
@@ -57,28 +54,61 @@ def draw_board(plan: Plan) -> Sheet:
 
     A left-handed job is the same board turned over, bass side up, with lettering upright.
     """
-    board = [*_wood(plan), *_slots(plan), *_lines(plan), *_strings(plan), *_figures(plan)]
+    board = [
+        *_wood(plan),
+        *_slots(plan),
+        *draw_holes(plan),
+        *_lines(plan),
+        *draw_blank(plan),
+        *_strings(plan),
+        *_figures(plan),
+    ]
     if plan.instrument.hand == "left":
         board = [mirrored_shape(shape) for shape in board]
     notes = board_notes(plan)
     title = plan.instrument.title
-    shapes = [*board, *draw_origin_mark(), *_legend(title, notes, around=extents_of(board))]
+    legend = draw_legend(title, notes, around=with_lettering(board), left=0.0)
+    shapes = [*board, *draw_origin_mark(), *legend]
     return make_sheet("board", f"{title}: fingerboard", shapes=shapes, notes=notes)
 
 
 def board_notes(plan: Plan) -> tuple[str, ...]:
-    """Say unit, datum, and whether lines are nominal."""
-    tooling = plan.instrument.tooling
-    offset = tooling is not None and tooling.lines == "offset"
+    """Say unit, datum, the state of the wood, and whether lines are nominal."""
     notes = [
         "Unit: mm, drawn 1:1. Seen from above, nut at the left.",
         "Origin: where the nut line crosses the centre line.",
-        "Lines: offset for the kerf." if offset else "Lines: nominal, no cutter offset.",
-        f"Slots: {plan.cut.finished_mm:.3f} mm wide when cut.",
+        _say_state(plan),
+        say_lines(offset=offsets_lines(plan)),
+        *_say_slots(plan),
     ]
     if plan.instrument.hand == "left":
-        notes.append("Left-handed: mirrored across the centre line.")
+        notes.append(MIRRORED)
     return tuple(notes)
+
+
+def _say_slots(plan: Plan) -> list[str]:
+    """Say how wide slots come out, and what a round cutter does at blind ends."""
+    if plan.instrument.frets.kind != "slotted":
+        return ["Stops are scribed from edge to edge; no slot is cut."]
+    cut, blind = plan.cut, plan.instrument.slots.run == "blind"
+    notes = [f"Slots: {cut.finished_mm:.3f} mm wide when cut."]
+    if cut.drawn_mm is not None and cut.centre_line:
+        notes.append("CUT_POCKET clears a slot, CUT_SLOT is its centre line: cut one of the two.")
+    if blind and cut.centre_line and cut.corner_mm:
+        notes.append(
+            f"Along a blind centre line the cutter reaches {cut.corner_mm:.2f} mm past each end."
+        )
+    if blind and cut.drawn_mm is not None and cut.corner_mm:
+        short = 2 * cut.corner_mm
+        notes.append(f"Blind pockets are full width over {short:.2f} mm less than their length.")
+    return notes
+
+
+def _say_state(plan: Plan) -> str:
+    """Say which wood the sheet is laid on; seen from above, nothing moves as it is shaped on."""
+    if plan.surface.flat:
+        return "State of the wood: square blank, before it is tapered."
+    return "State of the wood: square blank, top still flat, before it is tapered and radiused."
 
 
 def _point(point: NDArray[np.float64]) -> Point:
@@ -86,7 +116,7 @@ def _point(point: NDArray[np.float64]) -> Point:
 
 
 def _wood(plan: Plan) -> Iterator[Shape]:
-    yield Outline(CUT_OUTLINE, tuple(_point(corner) for corner in plan.board.wood_mm))
+    yield cut_free(plan, Outline(CUT_OUTLINE, tuple(_point(p) for p in plan.board.wood_mm)))
     if plan.instrument.board.binding_mm:
         for edge in (plan.board.treble, plan.board.bass):
             yield Outline(REF_LINE, tuple(_point(p) for p in edge.points_mm), closed=False)
@@ -97,6 +127,10 @@ def _cut_pieces(plan: Plan) -> tuple[Piece, ...]:
 
 
 def _slots(plan: Plan) -> Iterator[Shape]:
+    if plan.instrument.frets.kind != "slotted":  # stops are scribed: there is no wire to seat
+        for piece in plan.pieces:
+            yield Line(SCRIBE_STOP, _point(piece.bass_mm), _point(piece.treble_mm))
+        return
     for piece in _cut_pieces(plan):
         if plan.cut.centre_line:
             yield Line(CUT_SLOT, _point(piece.cut_bass_mm), _point(piece.cut_treble_mm))
@@ -158,30 +192,12 @@ def _strings(plan: Plan) -> Iterator[Shape]:
 
 
 def _figures(plan: Plan) -> Iterator[Shape]:
-    """Fret labels beside the bass ends, string notes behind the nut."""
-    labels = plan.instrument.frets.labels
+    """Fret labels beside the bass ends, string notes behind the nut, names of lines."""
+    places = []
     for fret in range(1, plan.instrument.frets.count + 1):
-        end = plan.pieces_of(fret)[-1].cut_bass_mm
-        low = min(float(end[1]), plan.board.bass.y_at(float(end[0])))
-        yield Lettering(
-            ENGRAVE_LABEL,
-            labels[fret - 1],
-            (float(end[0]), low - CLEAR_MM),
-            FIGURE_MM,
-            stand="top",
-        )
-    behind = float(min(plan.board.wood_mm[:, 0].min(), plan.ends.nut_mm[:, 0].min())) - CLEAR_MM
-    for string, start in zip(plan.instrument.strings, plan.ends.nut_mm, strict=True):
-        name = str(string.note) if string.note is not None else f"{string.hz:.2f} Hz"
-        yield Lettering(ENGRAVE_LABEL, name, (behind, float(start[1])), FIGURE_MM, align="right")
-
-
-def _legend(title: str, notes: tuple[str, ...], *, around: Extents) -> Iterator[Shape]:
-    """Title above the board; notes and check bar below it, all in the waste."""
-    room = 2 * CLEAR_MM + FIGURE_MM
-    high, low = around.high + room, around.low - room
-    yield Lettering(ENGRAVE_LABEL, title, (0.0, high), TITLE_MM, align="left", stand="base")
-    for row, note in enumerate(notes):
-        place = (0.0, low - row * LINE_MM)
-        yield Lettering(ENGRAVE_LABEL, note, place, NOTE_MM, align="left", stand="top")
-    yield from draw_check_bar((BAR_FROM_MM, low - NOTE_MM))
+        x, y = _point(plan.pieces_of(fret)[-1].cut_bass_mm)
+        places.append((x, min(y, plan.board.bass.y_at(x)) - CLEAR_MM))
+    yield from draw_fret_labels(plan.instrument.frets.labels, places)
+    behind = float(min(plan.board.wood_mm[:, 0].min(), plan.ends.nut_mm[:, 0].min()))
+    yield from draw_string_names(plan, x_mm=behind - 2 * CLEAR_MM)
+    yield from draw_line_names(plan, beyond_mm=TICK_MM)

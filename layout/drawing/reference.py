@@ -9,6 +9,9 @@ from layout.drawing.shapes import REF_BAR, Lettering, Line, Point, Shape
 BAR_MM = 100.0
 """Length of the check bar: a steel rule reads it to 0.1 mm, one part in a thousand."""
 
+ORIGIN_TEXT = "origin 0,0"
+"""What stands beside the origin mark; a sheet that is moved says there where the mark is now."""
+
 
 def draw_check_bar(
     start: Point, *, angle: float = 0.0, tick_mm: float = 4.0, height_mm: float = 3.0
@@ -49,7 +52,7 @@ def draw_check_bar(
 
 
 def draw_origin_mark(
-    at: Point = (0.0, 0.0), *, text: str = "origin 0,0", arm_mm: float = 3.0, height_mm: float = 2.0
+    at: Point = (0.0, 0.0), *, text: str = ORIGIN_TEXT, arm_mm: float = 3.0, height_mm: float = 2.0
 ) -> tuple[Shape, ...]:
     """Draw a small slanting cross at the origin, and say what it is beside it.
 

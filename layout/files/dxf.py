@@ -3,11 +3,13 @@
 References
 ----------
 Autodesk (1999), DXF Reference for AutoCAD 2000: group codes, header variables.
+Autodesk (1992), AutoCAD Release 12 Customization Manual, chapter 11: drawing interchange files.
 
 """
 
 from __future__ import annotations
 
+import logging
 import math
 import re
 from collections.abc import Iterator, Mapping
@@ -26,25 +28,31 @@ from layout.drawing.shapes import (
     Shape,
 )
 from layout.drawing.sheet import Sheet
+from layout.files.arcs import Arcs, spell_arcs
 from layout.files.layers import COLOURS, name_layers
 
 if TYPE_CHECKING:
     from ezdxf.document import Drawing
     from ezdxf.layouts.layout import Modelspace
 
-DxfVersion = Literal["r2000"]
+DxfVersion = Literal["r2000", "r12"]
+"""Release 2000, or 12 of 1992 for old machines: that one has no place for the unit."""
 
-_MILLIMETRES, _METRIC = 4, 1
+_NO_UNIT, _MILLIMETRES, _METRIC = 0, 4, 1
 """$INSUNITS and $MEASUREMENT (DXF Reference, header section)."""
-_ANGLE_DIGITS = 11
-"""Of arc ends in degrees: 1e-11 degree is 2e-10 mm at 1 m radius."""
+_ANGLE_DIGITS = 13
+"""Of arc ends in degrees: half a step is 9e-11 mm at 100 m radius, see ``LARGEST_RADIUS_MM``."""
 _WITH_EXPONENT = re.compile(r"-?\d+(?:\.\d+)?e[+-]?\d+")
 _FLOAT_CODES = (range(10, 60), range(110, 150), range(210, 240), range(460, 470), range(1010, 1060))
 """Group codes whose value is a floating-point number (DXF Reference, group code ranges)."""
 
 
 def render_dxf(
-    sheet: Sheet, *, layers: Mapping[str, str] | None = None, version: DxfVersion = "r2000"
+    sheet: Sheet,
+    *,
+    layers: Mapping[str, str] | None = None,
+    version: DxfVersion = "r2000",
+    arcs: Arcs = "bulge",
 ) -> bytes:
     """Write a sheet as an ASCII DXF file in millimetres.
 
@@ -55,7 +63,9 @@ def render_dxf(
     layers
         The maker's own layer names: layer to name.
     version
-        The release of the format.
+        The release of the format. Release 12 knows no unit: whoever names the file says it there.
+    arcs
+        How round edges of outlines are written: ``spell_arcs`` tells.
 
     Returns
     -------
@@ -69,9 +79,10 @@ def render_dxf(
 
     Notes
     -----
-    Lines are LINE, holes CIRCLE, outlines and strokes LWPOLYLINE with bulges, slot floors 3D
-    POLYLINE; nothing else is used. Only the layers that are drawn on are listed, beside the
-    layer 0 that the format demands.
+    Lines are LINE, holes CIRCLE, outlines and strokes LWPOLYLINE with bulges (in release 12 flat
+    POLYLINE), slot floors 3D POLYLINE; nothing else is used but ARC. Only the layers that are
+    drawn on are listed, beside the layer 0 that the format demands. Release 12 keeps names in
+    upper case, and so the layers' names are written there.
 
     """
     names = name_layers(layers or {})
@@ -83,7 +94,10 @@ def render_dxf(
     space = document.modelspace()
     for layer in sheet.layers:
         for shape in sheet.on_layer(layer):
-            _add(space, shape, names[layer])
+            for spelt in spell_arcs(shape, arcs):
+                _add(space, spelt, names[layer])
+    if version == "r12":
+        _keep_to_release_12(document)
     return _write(document)
 
 
@@ -92,10 +106,24 @@ def _new_document(version: DxfVersion) -> Drawing:
     from ezdxf.filemanagement import new  # noqa: PLC0415
 
     with _fixed_options():
-        document = new(version.upper(), setup=False, units=_MILLIMETRES)
-    document.header["$MEASUREMENT"] = _METRIC
+        if version == "r12":
+            with _without_warnings():  # that release 12 has no unit; ``render_dxf`` says so
+                document = new("R12", setup=False, units=_NO_UNIT)
+        else:
+            document = new("R2000", setup=False, units=_MILLIMETRES)
+            document.header["$MEASUREMENT"] = _METRIC
     document.layers.remove("Defpoints")
     return document
+
+
+def _keep_to_release_12(document: Drawing) -> None:
+    """Leave out what came later: handles nobody refers to, names in lower case."""
+    from ezdxf.r12strict import make_acad_compatible  # noqa: PLC0415  # see _new_document
+
+    document.header["$HANDLING"] = 0
+    document.header["$DIMSTYLE"] = "STANDARD"  # the one that is listed
+    document.layers.get("0").dxf.linetype = "CONTINUOUS"
+    make_acad_compatible(document)
 
 
 def _set_extents(document: Drawing, sheet: Sheet) -> None:
@@ -136,7 +164,8 @@ def _add(space: Modelspace, shape: Shape, name: str) -> None:
         case Outline():
             bulges = shape.bulges or (0.0,) * len(shape.vertices)
             points = [(*xy, bulge) for xy, bulge in zip(shape.vertices, bulges, strict=True)]
-            space.add_lwpolyline(points, format="xyb", close=shape.closed, dxfattribs=on_layer)
+            flat = space.add_polyline2d if space.dxfversion == "AC1009" else space.add_lwpolyline
+            flat(points, format="xyb", close=shape.closed, dxfattribs=on_layer)
         case Polyline3D():
             space.add_polyline3d(shape.vertices, dxfattribs=on_layer)
         case Lettering():
@@ -151,7 +180,7 @@ def _write(document: Drawing) -> bytes:
         lines = stream.getvalue().split("\n")
     for place in range(1, len(lines), 2):
         value = lines[place]
-        if _WITH_EXPONENT.fullmatch(value) and _holds_float(lines[place - 1]):
+        if "e" in value and _WITH_EXPONENT.fullmatch(value) and _holds_float(lines[place - 1]):
             lines[place] = format(Decimal(value), "f")
         elif value == "-0.0" and _holds_float(lines[place - 1]):
             lines[place] = "0.0"
@@ -177,3 +206,14 @@ def _fixed_options() -> Iterator[None]:
         yield
     finally:
         options.write_fixed_meta_data_for_testing = before
+
+
+@contextmanager
+def _without_warnings() -> Iterator[None]:
+    logger = logging.getLogger("ezdxf")
+    before = logger.disabled
+    logger.disabled = True
+    try:
+        yield
+    finally:
+        logger.disabled = before

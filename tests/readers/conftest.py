@@ -14,7 +14,7 @@ import re
 import shutil
 import subprocess
 from collections.abc import Callable, Iterable, Iterator
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 from pathlib import Path
 
 import numpy as np
@@ -26,6 +26,8 @@ from layout.drawing.sheet import Sheet
 HERE = Path(__file__).parent
 ARC_STEP_DEG = 0.1
 """GDAL turns arcs into chords of this angle; their middles lie r (1 - cos(step/2)) inside."""
+JOINT_MM = 1e-9
+"""Ends nearer than this are one point to a reader that chains loose ends."""
 CHORD_SHARE = 1 - math.cos(math.radians(ARC_STEP_DEG) / 2)
 
 
@@ -125,10 +127,11 @@ def _distances(points: np.ndarray, entity: Entity) -> np.ndarray:
         starts, ends = (np.array(side) for side in zip(*straight, strict=True))
         way = ends - starts
         square = np.maximum((way**2).sum(axis=1), 1e-300)
-        for place, point in enumerate(points):
-            share = np.clip(((point - starts) * way).sum(axis=1) / square, 0, 1)
-            gaps = np.hypot(*(starts + share[:, None] * way - point).T)
-            nearest[place] = min(nearest[place], gaps.min())
+        for place in range(0, len(points), 64):  # as many as fit in memory at a time
+            gaps = points[place : place + 64, None] - starts
+            share = np.clip((gaps * way).sum(axis=2) / square, 0, 1)
+            off = gaps - share[:, :, None] * way
+            nearest[place : place + 64] = np.sqrt((off**2).sum(axis=2)).min(axis=1)
     for start, end, bulge in entity.edges:
         if bulge:
             nearest = np.minimum(nearest, _from_arc(points, start, end, bulge))
@@ -170,8 +173,11 @@ def _middles(entity: Entity) -> tuple[np.ndarray, float]:
     return np.array(points), largest
 
 
-def deviation_mm(expected: Entity, found: Entity) -> float:
-    """The largest distance between what should be there and what is, both ways."""
+def deviation_mm(expected: Entity, found: Entity, chord_mm: float = 0.0) -> float:
+    """The largest distance between what should be there and what is, both ways.
+
+    `chord_mm`: how far the file's own chords may lie from an arc; their ends may not.
+    """
     mine, theirs = np.array(expected.vertices), np.array(found.vertices)
     if expected.kind == "floor" and found.kind == "floor":
         return float(np.abs(mine - theirs).max()) if mine.shape == theirs.shape else math.inf
@@ -182,6 +188,10 @@ def deviation_mm(expected: Entity, found: Entity) -> float:
         off = max(off, float(gaps.min(axis=1).max()))
     middles, radius = _middles(expected)
     allowed = radius * CHORD_SHARE * 1.01 if found.chords else 0.0
+    if radius and chord_mm:
+        allowed = max(allowed, chord_mm)
+        between, _ = _middles(found)
+        off = max(off, float(_distances(between, expected).max()) - chord_mm)
     return max(off, float(_distances(middles, found).max()) - allowed)
 
 
@@ -189,10 +199,24 @@ def deviation_mm(expected: Entity, found: Entity) -> float:
 
 
 def compare(
-    sheet: Sheet, reading: Reading, tolerance_mm: float, names: dict[str, str] | None = None
+    sheet: Sheet,
+    reading: Reading,
+    tolerance_mm: float,
+    names: dict[str, str] | None = None,
+    arcs: str = "bulge",
 ) -> list[str]:
-    """Say everything in which a reading differs from the sheet; empty when nothing does."""
+    """Say everything in which a reading differs from the sheet; empty when nothing does.
+
+    `arcs`: with `pieces`, loose lines and arcs are chained first, on layers with round outlines;
+    with `chords`, everything round but holes may be straight pieces within 0.002 mm.
+    """
     expected = expected_entities(sheet, names)
+    if arcs == "pieces":
+        bent = {entity.layer for entity in expected if entity.kind == "outline" if _bends(entity)}
+        reading = replace(reading, entities=chain_loose_ends(reading.entities, bent))
+    chord_mm = 0.002 if arcs == "chords" else 0.0
+    if chord_mm:
+        expected = [replace(e, kind="outline") if e.kind == "arc" else e for e in expected]
     problems = [f"foreign entity {kind}" for kind in reading.foreign]
     if reading.unit not in {None, "mm"}:
         problems.append(f"unit is {reading.unit}, not mm")
@@ -203,7 +227,7 @@ def compare(
     problems += [f"missing: {entity.where}" for entity in missing]
     problems += [f"extra: {entity.where}" for entity in extra]
     for mine, found in pairs:
-        off = deviation_mm(mine, found)
+        off = deviation_mm(mine, found, chord_mm if mine.kind != "circle" else 0.0)
         if not off <= tolerance_mm:
             problems.append(f"{mine.where}: off by {off:.6g} mm")
         if found.kind not in {mine.kind, "path"}:
@@ -211,6 +235,55 @@ def compare(
         if mine.closed != found.closed:
             problems.append(f"{mine.where}: {'open' if mine.closed else 'closed'}")
     return problems + doubled(reading.entities) + degenerate(reading.entities)
+
+
+def _bends(entity: Entity) -> bool:
+    return any(entity.bulges)
+
+
+def chain_loose_ends(entities: list[Entity], layers: set[str]) -> list[Entity]:
+    """Join open pieces of one layer whose ends lie within 1e-9 mm, as a cutter's program does."""
+    whole = [e for e in entities if e.closed or e.layer not in layers or e.kind == "floor"]
+    loose = [e for e in entities if not (e.closed or e.layer not in layers or e.kind == "floor")]
+    while loose:
+        chain = loose.pop(0)
+        for _ in range(2):  # onward from its end, then onward from its start
+            while (found := _take_next(chain, loose)) is not None:
+                chain = Entity(
+                    "path",
+                    chain.layer,
+                    chain.vertices[:-1] + found.vertices,
+                    chain.bulges[: len(chain.vertices) - 1] + found.bulges,
+                    chords=chain.chords or found.chords,
+                )
+            chain = _back(chain)
+        if len(chain.vertices) > 2 and _joined(chain.vertices[-1], chain.vertices[0]):
+            ends = {"vertices": chain.vertices[:-1], "bulges": chain.bulges[:-1]}
+            chain = replace(chain, closed=True, **ends)
+        whole.append(chain)
+    return whole
+
+
+def _take_next(chain: Entity, loose: list[Entity]) -> Entity | None:
+    """Take the piece that goes on where a chain ends, unless it is closed there."""
+    if len(chain.vertices) > 2 and _joined(chain.vertices[-1], chain.vertices[0]):
+        return None
+    for place, other in enumerate(loose):
+        for turned in (other, _back(other)):
+            if other.layer == chain.layer and _joined(chain.vertices[-1], turned.vertices[0]):
+                del loose[place]
+                return turned
+    return None
+
+
+def _joined(one: tuple[float, ...], other: tuple[float, ...]) -> bool:
+    return math.dist(one, other) <= JOINT_MM
+
+
+def _back(entity: Entity) -> Entity:
+    edges = len(entity.vertices) - 1
+    bulges = tuple(-bulge for bulge in entity.bulges[:edges][::-1])
+    return replace(entity, vertices=entity.vertices[::-1], bulges=(*bulges, 0.0))
 
 
 def _pair_up(
@@ -262,19 +335,24 @@ def doubled(entities: list[Entity], tolerance_mm: float = 1e-5) -> list[str]:
         way = np.array([edge[1] for edge in straight]) - start
         length = np.maximum(np.hypot(*way.T), 1e-300)
         unit = way / length[:, None]
+        low = np.minimum(start, start + way) - tolerance_mm
+        high = np.maximum(start, start + way) + tolerance_mm
         for i, (from_i, to_i, _, entity) in enumerate(straight):
             # Distance of edge i's ends from the line of every longer edge, and its shadow on it.
             longer = (length > length[i]) | ((length == length[i]) & (np.arange(len(way)) > i))
+            near = (low[:, 0] <= high[i, 0]) & (high[:, 0] >= low[i, 0])
+            near &= (low[:, 1] <= high[i, 1]) & (high[:, 1] >= low[i, 1])
+            rivals = np.flatnonzero(longer & near)
             off, along = [], []
             for point in (from_i, to_i):
-                gap = point - start
-                off.append(np.abs(gap[:, 0] * unit[:, 1] - gap[:, 1] * unit[:, 0]))
-                along.append((gap * unit).sum(axis=1))
-            shared = np.minimum(np.maximum(*along), length) - np.maximum(np.minimum(*along), 0)
-            hits = longer & (np.maximum(*off) < tolerance_mm) & (shared > tolerance_mm)
+                gap = point - start[rivals]
+                off.append(np.abs(gap[:, 0] * unit[rivals, 1] - gap[:, 1] * unit[rivals, 0]))
+                along.append((gap * unit[rivals]).sum(axis=1))
+            ahead, behind = np.maximum(*along), np.minimum(*along)
+            shared = np.minimum(ahead, length[rivals]) - np.maximum(behind, 0)
+            hits = (np.maximum(*off) < tolerance_mm) & (shared > tolerance_mm)
             problems += [
-                f"drawn twice: {entity.where} and {straight[j][3].where}"
-                for j in np.flatnonzero(hits)
+                f"drawn twice: {entity.where} and {straight[j][3].where}" for j in rivals[hits]
             ]
     marks: dict[tuple[float, ...], Entity] = {}
     for start, end, bulge, entity in curved:
@@ -317,8 +395,9 @@ def _read_dxf_gdal(path: Path) -> Reading:
     column = dict(zip(meta["fields"], columns, strict=True))
     entities, foreign = [], []
     for wkb, layer, classes in zip(geometries, column["Layer"], column["SubClasses"], strict=True):
-        kind = _GDAL_KINDS.get(classes.removeprefix("AcDbEntity:"))
         shape = shapely.from_wkb(bytes(wkb))
+        old = classes is None  # release 12 has no classes, so this reader does not tell kinds
+        kind = "path" if old else _GDAL_KINDS.get(classes.removeprefix("AcDbEntity:"))
         if kind is None or shape.geom_type != "LineString":
             foreign.append(f"{classes} {shape.geom_type}")
             continue
@@ -326,9 +405,16 @@ def _read_dxf_gdal(path: Path) -> Reading:
         points[:, : 3 if shape.has_z else 2] = shapely.get_coordinates(
             shape, include_z=bool(shape.has_z)
         )
-        closed = kind in {"outline", "circle"} and bool((points[0] == points[-1]).all())
+        if kind == "outline":
+            # Where an arc ends, this reader may give its own last point and the vertex as well.
+            kept = np.hypot(*np.diff(points[:, :2], axis=0).T) > 1e-10
+            points = points[np.concatenate([kept, [True]])]
+        if old and points[:, 2].any():
+            kind = "floor"
+        may_close = kind in {"outline", "circle"} or (kind == "path" and len(points) > 2)
+        closed = may_close and bool((points[0] == points[-1]).all())
         vertices = tuple(map(tuple, points[:-1] if closed else points))
-        chords = kind in {"arc", "circle"} or len(vertices) > 100
+        chords = kind in {"arc", "circle"} or len(vertices) > (2 if kind == "path" else 100)
         entities.append(Entity(kind, layer, vertices, (0.0,) * len(vertices), closed, chords))
     return Reading(entities, foreign=foreign)
 
@@ -361,6 +447,8 @@ def _read_dxf_node(path: Path) -> Reading:
         else:
             entities.append(entity)
     unit = {1: "in", 4: "mm", 6: "m"}.get(drawing["header"].get("$INSUNITS"), "unknown")
+    if drawing["header"]["$ACADVER"] == "AC1009":
+        unit = None  # release 12 has no unit
     return Reading(entities, layers=set(drawing["layers"]), unit=unit, foreign=foreign)
 
 
@@ -371,7 +459,7 @@ def _from_node(raw: dict) -> Entity | None:
     match raw["type"]:
         case "LINE":
             return Entity("line", layer, vertices, bulges)
-        case "LWPOLYLINE":
+        case "LWPOLYLINE" | "POLYLINE" if not raw.get("is3dPolyline"):
             return Entity("outline", layer, vertices, bulges, bool(raw.get("shape")))
         case "POLYLINE" if raw.get("is3dPolyline"):
             return Entity("floor", layer, vertices, bulges, bool(raw.get("shape")))
