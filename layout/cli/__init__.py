@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import importlib
+import io
 import os
 import sys
 
@@ -15,6 +16,7 @@ COMMANDS = {
     "new": "Print a starter job that runs as it is.",
     "plan": "Print where every stop, nut and saddle goes, and what error is left.",
     "cut": "Write the files to cut: drawings, positions, plan.",
+    "prove": "Read drawings back, also edited ones, and measure them against the job.",
     "temperaments": "List temperaments, or show one with its positions.",
 }
 """Every command with its one line of help, so that the help page loads none of them."""
@@ -58,6 +60,9 @@ def main() -> None:
     if sys.stdout is None:  # closed by the caller: the first file opened would take its place
         click.echo("stopwright: standard output is closed", err=True)
         sys.exit(3)
+    if isinstance(sys.stdout, io.TextIOWrapper):
+        # A title or a path that the terminal has no letters for is shown, not stumbled over.
+        sys.stdout.reconfigure(errors="backslashreplace")
     try:
         group(prog_name="stopwright")
     except FileError as error:
