@@ -13,11 +13,15 @@ from layout.files.wood_page import write_wood
 from layout.findings import Finding
 from layout.instrument import MultiScale
 from layout.plan.laying import outer_strings
+from layout.plan.leaving import measure_left
 from layout.plan.model import Plan
 from layout.units import MM_PER_INCH, NEWTON_PER_POUND_FORCE, write_sixty_fourths
 
 MOST_ALIKE = 3
 """Findings of one kind that are told one by one."""
+
+LEAST_MISS_MM = 0.0005
+"""Smaller misses vanish in the last printed digit."""
 
 STRAIGHT_MM = 0.005
 """Crown points closer to a line than this are said to lie on it."""
@@ -225,6 +229,21 @@ def _frets(plan: Plan, *, inch: bool) -> str:
         f"centre line, {plan.cut.finished_mm:.3f} mm wide as cut\n"
         + align(header, rows)
         + ("\n  *degrees off square, + when the treble end is nearer the bridge" if slanted else "")
+        + _left(plan)
+    )
+
+
+def _left(plan: Plan) -> str:
+    """Say the most that a straight fret misses a string's own stop by."""
+    left = measure_left(plan)
+    miss = np.where(np.isfinite(left.mm), np.abs(left.mm), 0.0)
+    string, fret = np.unravel_index(int(np.argmax(miss)), miss.shape)
+    if miss[string, fret] < LEAST_MISS_MM:
+        return "\n  Every fret passes through every string's own stop"
+    label = plan.instrument.frets.labels[fret]
+    return (
+        f"\n  Straight frets miss the strings' own stops by {miss[string, fret]:.3f} mm at most "
+        f"({left.cents[string, fret]:+.2f} cents, string {string + 1} at fret {label})"
     )
 
 

@@ -32,8 +32,9 @@ class SlotCut:
         Whether the centre line is drawn to be cut.
     too_narrow_by_mm
         How much the slot is narrower than the cutter; 0 where it is not.
-    inset_mm
-        How far the outline is drawn short of the slot's ends, for the kerf along the slot.
+    kerf_mm
+        The kerf in x and y where outlines are drawn inward by half of it; ``drawn_mm`` is then
+        that of a slot square to the centre line.
 
     """
 
@@ -42,7 +43,7 @@ class SlotCut:
     corner_mm: float
     centre_line: bool
     too_narrow_by_mm: float = 0.0
-    inset_mm: float = 0.0
+    kerf_mm: tuple[float, float] | None = None
 
 
 @dataclass(frozen=True, slots=True)
@@ -73,13 +74,14 @@ def _lasered(width: float, tooling: Tooling) -> SlotCut:
     The kerf's x goes across the slot and its y along it. A kerf as wide as the slot leaves no
     outline to draw inward.
     """
-    across, along = tooling.kerf_mm or (0.0, 0.0)
+    kerf = tooling.kerf_mm or (0.0, 0.0)
+    across = kerf[0]
     if tooling.lines != "offset":
         return SlotCut(width + across, width, 0.0, centre_line=False)
     if across >= width:
         short = across - width
         return SlotCut(across, None, 0.0, centre_line=True, too_narrow_by_mm=short)
-    return SlotCut(width, width - across, 0.0, centre_line=False, inset_mm=along / 2)
+    return SlotCut(width, width - across, 0.0, centre_line=False, kerf_mm=kerf)
 
 
 def _routed(width: float, tooling: Tooling) -> SlotCut:
@@ -138,9 +140,9 @@ def outline_slot(
     bass to treble.
     """
     assert cut.drawn_mm is not None
-    half = cut.drawn_mm / 2
     way = (treble_mm - bass_mm) / np.hypot(*(treble_mm - bass_mm))
-    treble_mm, bass_mm = treble_mm - cut.inset_mm * way, bass_mm + cut.inset_mm * way
+    half, inset = _drawn_half_and_inset(cut, way)
+    treble_mm, bass_mm = treble_mm - inset * way, bass_mm + inset * way
     side = np.array([way[1], -way[0]]) * half  # toward the bridge for a slot along +y
     radius = 0.0 if run == "open" else min(cut.corner_mm, half)
     if radius == 0.0:
@@ -172,6 +174,21 @@ def outline_slot(
     )
     quarter = float(np.tan(np.pi / 8))  # bulge of a quarter circle: tan(90 deg / 4)
     return Pocket(corners, (0.0, quarter) * 4)
+
+
+def _drawn_half_and_inset(cut: SlotCut, way: Array) -> tuple[float, float]:
+    """Half the drawn width, and how far the outline stays short of the ends, for one slot.
+
+    A beam whose kerf differs by axis removes sqrt((k_x n_x)^2 + (k_y n_y)^2) along a unit
+    direction n, so a slanted slot is drawn a little differently from a square one.
+    """
+    assert cut.drawn_mm is not None
+    if cut.kerf_mm is None:
+        return cut.drawn_mm / 2, 0.0
+    kerf_x, kerf_y = cut.kerf_mm
+    across = float(np.hypot(kerf_x * way[1], kerf_y * way[0]))
+    along = float(np.hypot(kerf_x * way[0], kerf_y * way[1]))
+    return (cut.drawn_mm + kerf_x - across) / 2, along / 2
 
 
 def full_depth_length_mm(cut: SlotCut, treble_mm: Array, bass_mm: Array, *, blind: bool) -> float:

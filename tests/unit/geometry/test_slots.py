@@ -4,6 +4,7 @@ import numpy as np
 import pytest
 import shapely
 
+from layout.geometry.kerf import offset_inward
 from layout.geometry.slots import (
     SlotCut,
     choose_cut,
@@ -74,7 +75,7 @@ def test_a_narrower_slot_has_no_pocket():
 
 def test_a_laser_on_the_line_widens_the_slot():
     cut = choose_cut(Slots(0.4), laser("on"))
-    assert (cut.drawn_mm, cut.inset_mm, cut.centre_line) == (0.4, 0.0, False)
+    assert (cut.drawn_mm, cut.kerf_mm, cut.centre_line) == (0.4, None, False)
     assert cut.finished_mm == pytest.approx(0.55, abs=1e-12)
 
 
@@ -157,3 +158,18 @@ def test_a_round_cutter_leaves_blind_ends_short_of_full_width():
     assert full_depth_length_mm(cut, TREBLE, BASS, blind=True) == pytest.approx(
         LENGTH - 0.4, abs=1e-12
     )
+
+
+@pytest.mark.parametrize("slant", [0.0, 0.2, -0.35])
+def test_a_laser_offset_follows_the_slant_as_any_outline_does(slant):
+    slots, tooling = Slots(0.5), Tooling("laser", kerf_mm=(0.12, 0.16), lines="offset")
+    treble, bass = np.array([100 + 25 * slant, 25.0]), np.array([100 - 25 * slant, -25.0])
+    nominal = outline_slot(
+        choose_cut(slots, Tooling("laser", kerf_mm=(0.0, 0.0), lines="on")),
+        treble,
+        bass,
+        run="open",
+    )
+    expected = offset_inward(nominal.points_mm, kerf_x_mm=0.12, kerf_y_mm=0.16)
+    drawn = outline_slot(choose_cut(slots, tooling), treble, bass, run="open")
+    np.testing.assert_allclose(drawn.points_mm, expected.points_mm, rtol=0, atol=1e-9)
