@@ -336,21 +336,10 @@ def _open_length_mm(laid: Laid, at_nut: Array, at_saddle: Array) -> Array:
 
 
 def _tension(body: StringBody, hz: Array, length: Array, instrument: Instrument) -> Array:
-    known = (
-        np.isfinite(body.unit_mass_kg_per_m)
-        & np.isfinite(body.axial_stiffness_n)
-        & np.isfinite(body.bending_stiffness_n_m2)
+    """Tension of every open string; nan where nothing is known of it."""
+    return solve_open_tension_n(
+        body, hz, length, nut=instrument.supports.nut, saddle=instrument.supports.saddle
     )
-    tension = np.full(len(hz), np.nan)
-    if known.any():
-        tension[known] = solve_open_tension_n(
-            _chosen_body(body, known),
-            hz[known],
-            length[known],
-            nut=instrument.supports.nut,
-            saddle=instrument.supports.saddle,
-        )
-    return tension
 
 
 def _shares(tension: Array, core_mm: Array) -> Array:

@@ -12,7 +12,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from layout.errors import NoSolutionError
-from layout.strings.least_move import Linearised
+from layout.strings.bowl import Linearised
 from layout.strings.lie import StringLie
 from layout.strings.moves import Freedom, Mask
 from layout.strings.stopping import StringBody, predict_stops

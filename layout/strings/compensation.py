@@ -21,7 +21,8 @@ from numpy.typing import NDArray
 
 from layout.errors import NoSolutionError
 from layout.strings.balance import Balance, EndLines, Misfit, Response, measure_misfit
-from layout.strings.least_move import Linearised, solve_least_move
+from layout.strings.bowl import Linearised
+from layout.strings.least_move import solve_least_move
 from layout.strings.lie import StringLie
 from layout.strings.moves import Move, free_unknowns
 from layout.strings.one_fret import ask_no_more, hold_nut
@@ -34,7 +35,10 @@ Array = NDArray[np.float64]
 SLANTS_KEPT = 2
 """Slants of the saddle strip that are solved in full, of all that are tried."""
 SAME_SLANT = 1e-6
-QUESTION = "compensation at nut and saddle (balance more frets, or free fewer figures)"
+QUESTION = (
+    "compensation at nut and saddle (check heights, gauges, notes and scale; or balance more "
+    "frets, or free fewer figures)"
+)
 FITS_MM = 1e-9
 """Tolerance of algebra."""
 

@@ -4,7 +4,8 @@ The points lie in the strip of width t whose centre line is x = c + b y when
 ``|x_i - c - b y_i| <= (t/2) sqrt(1 + b^2)`` for every point. Place and slant of the strip are
 unknowns beside the others. Each step solves the linearised least squares under the linearised
 inequalities, with a small proximal term that vanishes as the steps end; among the unknowns the
-sum does not feel it then takes the least moves.
+sum does not feel it then takes the least moves. Where steps shrink slowly the bend of the sum is
+measured, as without a strip.
 
 References
 ----------
@@ -23,17 +24,24 @@ import numpy as np
 from numpy.typing import NDArray
 
 from layout.errors import NoSolutionError
+from layout.strings.bowl import Linearised, measure_bend, split_felt, with_bend
 from layout.strings.inequality import solve_bounded
-from layout.strings.least_move import Linearised, is_settled, split_felt
+from layout.strings.least_move import is_settled, is_slow
 
 Array = NDArray[np.float64]
 
+QUESTION = (
+    "nut and saddle within the saddle's thickness (check heights, gauges, notes and scale, or "
+    "allow a thicker saddle)"
+)
 STEPS = 200
 HALVINGS = 25
 OUTSIDE_MM = 5e-9
 """Points outside the strip by less than this are in it; both sides come in by as much."""
 HOLD = 3e-2
 """Proximal weight, against the slope felt most, of what no residual feels directly."""
+LEAST_HOLD = 1e-3
+"""What halving the weight may leave of it, where steps shrink slowly."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -137,11 +145,19 @@ def solve_in_strip(
     at = np.concatenate([start, strip.line_through(place(start).points_mm, slant)])
     here, placed = linearise(start), place(start)
     before = np.inf
+    bend: Array | None = None
+    hold = HOLD
     for _ in range(STEPS):
         room_mm, room_slopes = strip.room_mm(placed, at[-2:])
-        step = _bounded_step(here, room_mm, room_slopes)
-        change = float(np.abs(here.move_slopes @ step[:-2]).max(initial=0.0))
-        if is_settled(change, before=before) and room_mm.min() >= -OUTSIDE_MM:
+        step = _bounded_step(with_bend(here, bend), room_mm, room_slopes, hold=hold)
+        change = here.largest_move(step[:-2])
+        if is_slow(change, before=before):
+            hold = max(hold / 2, LEAST_HOLD)
+            bend = measure_bend(linearise, at[:-2], here=here)
+            step = _bounded_step(with_bend(here, bend), room_mm, room_slopes, hold=hold)
+            change = here.largest_move(step[:-2])
+        settled = is_settled(change, before=before, moves=here.moves)
+        if settled and room_mm.min() >= -OUTSIDE_MM:
             return Held(at[:-2], float(np.arctan(at[-1] / strip.reach_mm)), here.sum_of_squares)
         before = change
         for halving in range(HALVINGS):
@@ -155,19 +171,17 @@ def solve_in_strip(
         else:
             break
         at, here, placed = there, found, moved
-    raise NoSolutionError(
-        "nut and saddle within the saddle's thickness", iterations=STEPS, last=here.sum_of_squares
-    )
+    raise NoSolutionError(QUESTION, iterations=STEPS, last=here.sum_of_squares)
 
 
-def _bounded_step(here: Linearised, room_mm: Array, room_slopes: Array) -> Array:
+def _bounded_step(here: Linearised, room_mm: Array, room_slopes: Array, *, hold: float) -> Array:
     """Give the step (K + 2,) of least sum, then of least moves, that stays in the strip."""
     count = here.slopes.shape[1]
     scale = float(np.linalg.norm(here.slopes, 2)) if here.slopes.size else 0.0
     unfelt = split_felt(here.slopes)[1]
     free = np.zeros((unfelt.shape[1] + 2, count + 2))
     free[:-2, :count], free[-2:, count:] = unfelt.T, np.eye(2)
-    matrix = np.vstack([np.pad(here.slopes, ((0, 0), (0, 2))), (scale or 1.0) * HOLD * free])
+    matrix = np.vstack([np.pad(here.slopes, ((0, 0), (0, 2))), (scale or 1.0) * hold * free])
     wanted = np.concatenate([-here.residuals, np.zeros(len(free))])
     step = solve_bounded(matrix, wanted, room_slopes, -room_mm)
     moved = here.move_slopes @ unfelt
@@ -175,10 +189,10 @@ def _bounded_step(here: Linearised, room_mm: Array, room_slopes: Array) -> Array
         return step
     # Second stage: along what the sum does not feel, and with the strip free to follow.
     way = free.T
-    hold = HOLD * np.eye(len(free))
-    hold[:-2] *= HOLD  # these are held by the moves themselves
+    held = HOLD * np.eye(len(free))
+    held[:-2] *= HOLD  # these are held by the moves themselves
     moves = here.moves + here.move_slopes @ step[:count]
-    matrix = np.vstack([np.pad(moved, ((0, 0), (0, 2))), hold])
+    matrix = np.vstack([np.pad(moved, ((0, 0), (0, 2))), held])
     wanted = np.concatenate([-moves, np.zeros(len(free))])
     room_left = room_mm + room_slopes @ step
     return np.asarray(

@@ -57,7 +57,8 @@ def solve_open_tension_n(
     Raises
     ------
     NoSolutionError
-        When no tension does it: the string sounds higher than its note by stiffness alone.
+        When no tension does it: a string sounds higher than its note by stiffness alone. The
+        message counts the strings along the last axis from 1.
 
     Notes
     -----
@@ -89,13 +90,27 @@ def solve_open_tension_n(
         tension = tension * np.exp(step)
         if not (np.abs(step) > _SETTLED).any():
             return np.asarray(tension)
-    unsettled = int(np.argmax(np.abs(np.ravel(step))))
-    last = float(np.ravel(np.broadcast_to(tension, np.shape(step)))[unsettled])
-    raise NoSolutionError(
-        "tension in newton that tunes the open string",
+    raise _too_stiff(step, tension, ideal)
+
+
+def _too_stiff(step: Array, tension: Array, ideal: Array) -> NoSolutionError:
+    """Name the strings that did not settle by their places along the last axis, from 1.
+
+    A string asked about alone is not counted: its caller knows which it is.
+    """
+    size = np.abs(np.atleast_1d(step))
+    unsettled = np.argwhere(size > _SETTLED)  # an unknown string, nan, is not one of them
+    places = np.unique(unsettled[:, -1]) + 1
+    which = f"open {'string' if len(places) == 1 else 'strings'} {' and '.join(map(str, places))}"
+    worst = np.unravel_index(int(np.nanargmax(size)), size.shape)
+    last, highest = (float(np.broadcast_to(held, size.shape)[worst]) for held in (tension, ideal))
+    return NoSolutionError(
+        f"tension in newton that tunes {which if size.shape[-1] > 1 else 'the open string'} "
+        "(stiffness alone sounds higher; take a thinner or slacker string, or check its gauge, "
+        "note and scale)",
         iterations=_MOST_STEPS,
         last=last,
-        bracket=(0.0, float(np.ravel(np.broadcast_to(ideal, np.shape(step)))[unsettled])),
+        bracket=(0.0, highest),
     )
 
 

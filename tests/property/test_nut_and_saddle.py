@@ -157,3 +157,37 @@ def test_more_freedom_never_costs(strung, seed, strings):
     rules = [("none", "none"), ("none", "straight"), ("none", "each"), ("each", "each")]
     rms = [solve(case, nut, saddle).misfit.rms_cents for nut, saddle in rules]
     assert np.diff(rms).max() <= 1e-9
+
+
+@few
+@given(
+    seed=SEEDS,
+    step_cents=st.sampled_from([50.0, 78.0]),
+    lift_mm=st.floats(0.0, 3.0),
+    nut=RULES,
+    saddle=RULES,
+)
+def test_high_nuts_and_small_steps_end_where_no_small_move_lowers_the_sum(
+    strung, seed, step_cents, lift_mm, nut, saddle
+):
+    case = strung(seed, strings=4, frets=20)
+    number = np.arange(1, 21)
+    stops_mm = case.lie.scale_mm[:, None] * (1 - 2.0 ** (-step_cents * number / 1200))
+    target_cents = np.broadcast_to(step_cents * number, stops_mm.shape)
+    case = replace(
+        case,
+        balance=replace(case.balance, stops_mm=stops_mm, target_cents=target_cents),
+        lie=replace(
+            case.lie,
+            height_at_nut_mm=case.lie.height_at_nut_mm + lift_mm,
+            relief_from_mm=stops_mm[:, 0],
+            relief_to_mm=stops_mm[:, -1],
+        ),
+    )
+    found = solve(case, nut, saddle)
+    shift, setback = found.nut_shift_mm, found.setback_mm
+    least = total(case, shift, setback) * (1 - 1e-12)
+    for moved in neighbours(nut, shift, case.ends.nut_mm, case.ends):
+        assert total(case, moved, setback) >= least
+    for moved in neighbours(saddle, setback, case.ends.bridge_mm, case.ends):
+        assert total(case, shift, moved) >= least

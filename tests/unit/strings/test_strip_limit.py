@@ -2,7 +2,7 @@ import numpy as np
 import pytest
 
 from layout.errors import NoSolutionError
-from layout.strings.least_move import Linearised
+from layout.strings.bowl import Linearised
 from layout.strings.strip_limit import Placed, solve_in_strip
 
 Y_MM = np.array([20.0, 0.0, -20.0])

@@ -40,7 +40,24 @@ def test_a_bar_that_sounds_higher_by_itself_cannot_be_tuned():
         solve_open_tension_n(body, 330.0, 650.0, nut=CARRIED, saddle=CARRIED)
     assert caught.value.bracket == pytest.approx((0.0, 4e-4 * (2 * 0.65 * 330.0) ** 2))
     assert caught.value.last < 1e-6
-    assert "tension in newton that tunes the open string: no solution" in str(caught.value)
+    assert str(caught.value).startswith(
+        "tension in newton that tunes open string 2 (stiffness alone sounds higher; take a thinner "
+        "or slacker string, or check its gauge, note and scale): no solution between 0 and "
+    )
+
+
+def test_every_string_that_cannot_be_tuned_is_named():
+    bending = np.array([[50.0, 1e-5, np.nan, 1e-5], [1e-5, 1e-5, 1e-5, 60.0]])
+    body = StringBody(np.full(4, 4e-4), np.full(4, 4e3), bending)
+    with pytest.raises(NoSolutionError, match=r"tunes open strings 1 and 4 \("):
+        solve_open_tension_n(body, 330.0, 650.0, nut=CARRIED, saddle=CARRIED)
+
+
+@pytest.mark.parametrize("shape", [(), (1,), (3, 1)])
+def test_a_lone_string_is_not_counted(shape):
+    body = StringBody(np.full(shape, 4e-4), np.full(shape, 4e3), np.full(shape, 50.0))
+    with pytest.raises(NoSolutionError, match=r"tunes the open string \("):
+        solve_open_tension_n(body, 330.0, 650.0, nut=CARRIED, saddle=CARRIED)
 
 
 def test_unknown_strings_stay_unknown():
