@@ -146,7 +146,7 @@ def take_record(cursor: Cursor, *, inline: bool = False) -> Temperament | None:
         table.wrong(f"{len(notes)} names do not fit {len(made.degrees)} degrees", key="notes")
         return None
     try:
-        return Temperament(name, title, source, made.degrees, period, made.step, notes)
+        return Temperament(name, title, source, made.degrees, period, made.step, notes, form=form)
     except PitchError as error:
         table.wrong(str(error), key=form)
         return None

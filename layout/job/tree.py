@@ -281,7 +281,7 @@ def _explain(error: yaml.YAMLError, text: str, name: str) -> Fault:
     lines = text.split("\n")
     line = min(mark.line + 1, len(lines)) if mark else None
     opened_mark = getattr(error, "context_mark", None)
-    opened = opened_mark.line + 1 if opened_mark else line
+    opened = min(opened_mark.line + 1, len(lines)) if opened_mark else line
     context = str(getattr(error, "context", "") or "")
     for place, rule, remedy in _known_problems(problem, context, line, opened, lines):
         return Fault(name, place, "", None, rule, remedy)

@@ -40,10 +40,11 @@ def test_straight_outlines(points, kerf_x, kerf_y, offset) -> None:
     wanted = scale(buffer, **back)
     mine = shapely.Polygon(found.points_mm)
     assert mine.is_valid
-    assert mine.hausdorff_distance(wanted) < 1e-9
+    # The general library straightens what bends by less than a hundredth of the offset.
+    assert mine.hausdorff_distance(wanted) < 1e-6
     if kerf_x == kerf_y:
         plain = shapely.Polygon(points).buffer(way * kerf_x / 2, join_style="mitre", mitre_limit=99)
-        assert mine.hausdorff_distance(plain) < 1e-9
+        assert mine.hausdorff_distance(plain) < 1e-6
 
 
 def arc_points(start, end, bulge: float, count: int) -> np.ndarray:
