@@ -7,7 +7,7 @@ different notes meet different steps. Nothing here takes the repeat for an octav
 
 from __future__ import annotations
 
-from dataclasses import dataclass, replace
+from dataclasses import dataclass, field, replace
 from fractions import Fraction
 from itertools import pairwise
 
@@ -59,6 +59,9 @@ class Temperament:
         The names of the degrees where the temperament is keyed; else None.
     any_spelling
         Whether a keyed temperament takes every spelling of a semitone (F# and Gb alike).
+    form
+        The key of the record under which the degrees were written, such as ``fifths``; None
+        where they were not read from a record. Two that sound alike are equal in any form.
 
     Raises
     ------
@@ -75,6 +78,7 @@ class Temperament:
     step: Interval | None = None
     notes: tuple[NoteName, ...] | None = None
     any_spelling: bool = False
+    form: str | None = field(default=None, compare=False)
 
     def __post_init__(self) -> None:
         _check_degrees(self.degrees, self.period)
@@ -263,4 +267,5 @@ def equal(count: int, *, period: Fraction | int = 2, name: str | None = None) ->
     title = f"{count} equal steps"
     whole = Interval.of(period)
     degrees = equal_degrees(count, whole)
-    return Temperament(name or f"equal-{count}", title, "common practice", degrees, whole)
+    name = name or f"equal-{count}"
+    return Temperament(name, title, "common practice", degrees, whole, form="equal")

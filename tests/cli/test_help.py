@@ -56,7 +56,7 @@ def test_the_worked_line_runs(run, monkeypatch, tmp_path, examples, name: str) -
         (["plan"], "JOB"),
         (["plan", "job.yaml", "more.yaml"], "more.yaml"),
         (["cut", "job.yaml"], "--output"),
-        (["temperaments", "nope"], "no record 'nope'; the records are equal-12"),
+        (["temperaments", "nope"], "no record 'nope'; the records are alpha, "),
         (["temperaments", "equal-12", "--on", "long"], "a length is a number"),
         (["temperaments", "equal-12", "--on", "0"], "a length is above 0"),
         (["temperaments", "equal-12", "--on=-650"], "a length is above 0"),

@@ -4,8 +4,9 @@ import re
 
 import pytest
 
-from layout.files.record_page import render_record, render_record_list
-from layout.job.records import library_names, load_library_record
+from layout.files.record_page import record_group, render_record, render_record_list
+from layout.job.records import library_names, load_library_record, read_record
+from layout.pitch.notes import read_note_name
 
 
 def rows(text: str) -> list[list[str]]:
@@ -13,13 +14,77 @@ def rows(text: str) -> list[list[str]]:
     return [re.split(r"  +", line.strip()) for line in table]
 
 
-def test_every_record_is_listed_with_its_size() -> None:
+HEADINGS = {
+    "equal": "Equal steps of the octave",
+    "fifths": "Chains of fifths",
+    "ratios": "Ratios",
+    "string fractions": "Fractions of the string",
+    "no octave": "No octave",
+}
+
+
+def test_every_record_is_listed_once_with_its_size() -> None:
     records = [load_library_record(name) for name in library_names()]
     lines = render_record_list(records).splitlines()
-    assert len(lines) == len(records) + 1
-    listed = {line.split()[0]: line.split()[1] for line in lines[1:]}
+    cells = [line.split() for line in lines[1:] if line.startswith("  ")]
+    assert sorted(cell[0] for cell in cells) == sorted(library_names())
+    listed = {cell[0]: cell[1] for cell in cells}
     assert listed["equal-19"] == "19"
     assert listed["rule-of-18"] == "endless"
+    assert listed["alpha"] == "endless"
+    assert listed["dowland-1610"] == "11"  # ten frets and the open string
+    assert listed["bohlen-pierce-just"] == "13"
+
+
+def test_the_list_stands_under_how_its_records_are_built() -> None:
+    records = [load_library_record(name) for name in library_names()]
+    blocks = render_record_list(records).split("\n\n")
+    assert blocks[0].split() == ["name", "notes", "title"]
+    assert [block.splitlines()[0] for block in blocks[1:]] == list(HEADINGS.values())
+    under = {
+        block.splitlines()[0]: [line.split()[0] for line in block.splitlines()[1:]]
+        for block in blocks[1:]
+    }
+    assert set(under[HEADINGS["equal"]]) == {n for n in library_names() if n[:6] == "equal-"}
+    assert under[HEADINGS["string fractions"]] == ["dowland-1610", "rule-of-18", "strahle"]
+    assert {"pythagorean", "vallotti", "lehman"} <= set(under[HEADINGS["fifths"]])
+    assert {"just-12", "safi-al-din-17", "sruti-22"} <= set(under[HEADINGS["ratios"]])
+    assert under[HEADINGS["no octave"]] == [
+        *("alpha", "beta", "bohlen-pierce-equal", "bohlen-pierce-just", "gamma"),
+        "mersenne-semitone",
+    ]
+
+
+def test_a_heading_without_records_is_left_out() -> None:
+    page = render_record_list([load_library_record("equal-12")])
+    assert page.splitlines()[1:3] == ["", "Equal steps of the octave"]
+    assert len(page.splitlines()) == 4
+
+
+@pytest.mark.parametrize(
+    ("body", "group"),
+    [
+        ("period: 2\nequal: 5", "equal"),
+        ("period: 3/2\nequal: 5", "no octave"),
+        ("period: 4\nequal: 24", "no octave"),
+        ("period: 2\ncents: [0, 700]", "ratios"),
+        ("period: 2\nratios: [1, 3/2]", "ratios"),
+        ("period: none\nratios: [1, 3/2]", "no octave"),
+        ("period: 2\nnotes: [C, G]\nfifths: {chain: [C, G], narrow: 0}", "fifths"),
+        ("period: 3\nnotes: [C, G]\nfifths: {chain: [C, G], narrow: 0}", "no octave"),
+        ("period: none\nstring: [0, 1/3]", "string fractions"),
+        ("rule: {part: 1/17}", "string fractions"),
+        ("step_cents: 88", "no octave"),
+    ],
+)
+def test_a_record_is_grouped_by_its_form_and_its_octave(body: str, group: str) -> None:
+    record = read_record(f"name: own\ntitle: Own\nsource: the test\n{body}\n".encode(), "own")
+    assert record_group(record) == group
+
+
+def test_a_moved_record_stays_in_its_group() -> None:
+    moved = load_library_record("vallotti").keyed_from(read_note_name("D"))
+    assert record_group(moved) == "fifths"
 
 
 def test_degrees_have_cents_places_and_ratios() -> None:

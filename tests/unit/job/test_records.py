@@ -62,9 +62,9 @@ def test_every_record_of_the_library_reads_and_bears_its_file_name(name):
 
 
 def test_an_unknown_name_tells_the_nearest():
-    with pytest.raises(PitchError, match=r"no temperament equal-13; the nearest .* equal-1"):
+    with pytest.raises(PitchError, match=r"no temperament equal-13; the nearest .* equal-"):
         load_library_record("equal-13")
-    with pytest.raises(PitchError, match=r"the library has equal-12, "):
+    with pytest.raises(PitchError, match=r"the library has alpha, "):
         load_library_record("../../zzz")
 
 
