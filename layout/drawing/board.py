@@ -75,8 +75,8 @@ def draw_board(plan: Plan) -> Sheet:
 def board_notes(plan: Plan) -> tuple[str, ...]:
     """Say unit, datum, the state of the wood, and whether lines are nominal."""
     notes = [
-        "Unit: mm, drawn 1:1. Seen from above, nut at the left.",
-        "Origin: where the nut line crosses the centre line.",
+        "Unit: mm, 1:1. Seen from above, nut at the left.",
+        "Origin: the nut line on the centre line.",
         _say_state(plan),
         say_lines(offset=offsets_lines(plan)),
         *_say_slots(plan),
@@ -108,7 +108,7 @@ def _say_state(plan: Plan) -> str:
     """Say which wood the sheet is laid on; seen from above, nothing moves as it is shaped on."""
     if plan.surface.flat:
         return "State of the wood: square blank, before it is tapered."
-    return "State of the wood: square blank, top still flat, before it is tapered and radiused."
+    return "State of the wood: square blank, before it is tapered and radiused."
 
 
 def _point(point: NDArray[np.float64]) -> Point:

@@ -64,12 +64,11 @@ def floor_notes(plan: Plan) -> tuple[str, ...]:
     wood = "State of the wood: square blank or tapered, top flat."
     if not plan.surface.flat:
         wood = (
-            "State of the wood: square blank or tapered, top still flat or radiused: z is the "
-            "same, for radiusing takes nothing off at the centre line."
+            "State of the wood: square blank or tapered, top still flat or radiused: z is the same."
         )
     notes = [
-        "Unit: mm, 1:1. Chains in space on CUT_FLOOR: the path of the cutter's tip.",
-        "Origin: where the nut line crosses the centre line; z 0 is the top there.",
+        "Unit: mm, 1:1. CUT_FLOOR: paths in space of the cutter's tip.",
+        "Origin: the nut line on the centre line; z 0 is the top there.",
         wood,
         said,
         "Lines: nominal, the middle of each slot.",

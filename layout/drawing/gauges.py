@@ -102,9 +102,9 @@ def gauge_notes(plan: Plan, *, offset: bool | None = None) -> tuple[str, ...]:
     """Say unit, datum, the rule of the top, and the state of the wood the gauges check."""
     lines = offsets_lines(plan) if offset is None else offset
     return (
-        "Unit: mm, drawn 1:1.",
-        "Origin: top of the first arc, which stands on the centre line.",
-        "State of the wood: radiused. Hold a gauge square to the centre line, at its place.",
+        "Unit: mm, 1:1.",
+        "Origin: top of the first arc, on the centre line.",
+        "State of the wood: radiused. Hold gauges square to the centre line.",
         f"Top: {write_top_rule(plan)}.",
         say_lines(offset=lines),
     )

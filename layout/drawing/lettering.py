@@ -13,9 +13,13 @@ from __future__ import annotations
 import math
 import re
 import unicodedata
-from functools import cache
-from itertools import pairwise
+from collections.abc import Iterable, Iterator, Sequence
+from functools import cache, lru_cache
+from itertools import islice, pairwise
 from typing import NamedTuple
+
+import numpy as np
+from numpy.typing import NDArray
 
 from layout.drawing.shapes import Align, Point, Stand
 
@@ -48,6 +52,13 @@ class _Glyph(NamedTuple):
     strokes: tuple[tuple[GridPoint, ...], ...]
 
 
+class Chains(NamedTuple):
+    """Points (n, 2) of all strokes of a text one after another, and how many each stroke has."""
+
+    points: NDArray[np.float64]
+    counts: tuple[int, ...]
+
+
 def to_ascii(text: str) -> str:
     r"""Say a text in printable ASCII.
 
@@ -60,6 +71,8 @@ def to_ascii(text: str) -> str:
     'Laute n deg 3 - Bb ?'
 
     """
+    if text.isascii() and text.isprintable():
+        return text
     apart = _FRACTION_SIGN.sub(r"\1 \2", text)
     plain = unicodedata.normalize("NFKD", apart.translate(_SAID_IN_ASCII)).translate(_SAID_IN_ASCII)
     said = []
@@ -82,8 +95,7 @@ def text_width_mm(text: str, *, height_mm: float) -> float:
     4.0
 
     """
-    units = sum(glyph.width for glyph in _glyphs_for(text))
-    return units * height_mm / (_BASE_LINE - _CAP_LINE)
+    return _chains_of(to_ascii(text))[1] * height_mm / (_BASE_LINE - _CAP_LINE)
 
 
 def letter(
@@ -126,51 +138,73 @@ def letter(
     (((104.0, 59.0), (122.0, 59.0)),)
 
     """
+    points, counts = place_strokes(
+        text, anchor=anchor, height_mm=height_mm, angle=angle, align=align, stand=stand
+    )
+    placed = iter([(x, y) for x, y in points.tolist()])
+    return tuple(tuple(islice(placed, count)) for count in counts)
+
+
+def place_strokes(
+    text: str, *, anchor: Point, height_mm: float, angle: float, align: Align, stand: Stand
+) -> Chains:
+    """Give what ``letter`` draws in one array, mm: a sheet holds thousands of points of text."""
     if not height_mm > 0:
         raise ValueError(f"lettering has a height above 0, not {height_mm}")
+    if not math.isfinite(angle):
+        raise ValueError(f"lettering has a finite angle, not {angle}")
+    (grid, counts), width = _chains_of(to_ascii(text))
     scale = height_mm / (_BASE_LINE - _CAP_LINE)
     back = {"left": 0.0, "centre": 0.5, "right": 1.0}[align]
-    left = -back * text_width_mm(text, height_mm=height_mm)
+    left = -back * (width * height_mm / (_BASE_LINE - _CAP_LINE))
     foot = -{"base": 0.0, "middle": 0.5, "top": 1.0}[stand] * height_mm
+    along, up = left + scale * grid[:, 0], foot + scale * (_BASE_LINE - grid[:, 1])
     cosine, sine = math.cos(angle), math.sin(angle)
-
-    def place(point: GridPoint) -> Point:
-        along, up = left + scale * point[0], foot + scale * (_BASE_LINE - point[1])
-        return (
-            anchor[0] + along * cosine - up * sine,
-            anchor[1] + along * sine + up * cosine,
-        )
-
-    return tuple(tuple(place(point) for point in stroke) for stroke in _strokes_for(text))
+    x = anchor[0] + along * cosine - up * sine
+    y = anchor[1] + along * sine + up * cosine
+    return Chains(np.column_stack((x, y)), counts)
 
 
-def _strokes_for(text: str) -> list[list[GridPoint]]:
-    """Strokes of a whole text in font units, without the edges a glyph retraces."""
-    drawn: set[frozenset[GridPoint]] = set()
-    strokes: list[list[GridPoint]] = []
+@lru_cache(maxsize=1024)
+def _chains_of(plain: str) -> tuple[Chains, int]:
+    """Strokes of a text in font units, y downward, and how far it runs."""
+    points: list[GridPoint] = []
+    counts: list[int] = []
     pen = 0
-    for glyph in _glyphs_for(text):
+    for glyph in map(_glyph_of, plain):
         for stroke in glyph.strokes:
-            moved = [(x - glyph.left + pen, y) for x, y in stroke]
-            open_end = False
-            for start, end in pairwise(moved):
-                edge = frozenset((start, end))
-                if len(edge) == 1 or edge in drawn:
-                    open_end = len(edge) == 1 and open_end
-                    continue
-                drawn.add(edge)
-                if open_end:
-                    strokes[-1].append(end)
-                else:
-                    strokes.append([start, end])
-                open_end = True
+            points += [(x + pen, y) for x, y in stroke]
+            counts.append(len(stroke))
         pen += glyph.width
-    return strokes
+    return Chains(np.array(points, dtype=float).reshape(-1, 2), tuple(counts)), pen
 
 
-def _glyphs_for(text: str) -> list[_Glyph]:
-    font = _load_font()
-    return [font[character] for character in to_ascii(text)]
+@cache
+def _glyph_of(character: str) -> _Glyph:
+    """Give a character whose strokes begin at the pen."""
+    left, width, strokes = _load_font()[character]
+    moved = [[(x - left, y) for x, y in stroke] for stroke in strokes]
+    return _Glyph(0, width, tuple(_draw_edges_once(moved)))
+
+
+def _draw_edges_once(strokes: Iterable[Sequence[GridPoint]]) -> Iterator[tuple[GridPoint, ...]]:
+    """Leave out the edges that a glyph retraces; the stroke is broken there."""
+    drawn: set[frozenset[GridPoint]] = set()
+    for stroke in strokes:
+        chain: list[GridPoint] = []
+        for start, end in pairwise(stroke):
+            edge = frozenset((start, end))
+            if len(edge) == 1:
+                continue
+            if edge in drawn:
+                if chain:
+                    yield tuple(chain)
+                chain = []
+                continue
+            drawn.add(edge)
+            chain = [*chain, end] if chain else [start, end]
+        if chain:
+            yield tuple(chain)
 
 
 @cache

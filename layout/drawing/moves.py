@@ -103,11 +103,13 @@ def shifted(sheet: Sheet, by: Point) -> Sheet:
     Extents(left=0.5, low=0.0, right=1.5, high=42.0)
 
     """
-    shapes = [_shift(shape, by) for shape in sheet.shapes]
+    shapes = [shifted_shape(shape, by) for shape in sheet.shapes]
     return make_sheet(sheet.name, sheet.title, shapes=shapes, notes=sheet.notes)
 
 
-def _shift(shape: Shape, by: Point) -> Shape:
+def shifted_shape(shape: Shape, by: Point) -> Shape:
+    """Move one shape, lettering with its strokes."""
+
     def move(point: Point) -> Point:
         return point[0] + by[0], point[1] + by[1]
 
@@ -196,7 +198,7 @@ def _moved_saying_so(sheet: Sheet, by: Point) -> Sheet:
         told = shape
         if isinstance(shape, Lettering) and retold(shape.text) != shape.text:
             told = replace(shape, text=retold(shape.text), strokes=())
-        shapes.append(_shift(told, by))
+        shapes.append(shifted_shape(told, by))
     if any(isinstance(shape, Lettering) for shape in shapes):
         below = (sheet.extents.left + by[0], sheet.extents.low + by[1] - NOTE_BELOW_MM)
         shapes.append(Lettering(ENGRAVE_LABEL, note, below, NOTE_MM, align="left", stand="top"))

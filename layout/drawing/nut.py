@@ -269,8 +269,8 @@ def _say_fit(plan: Plan) -> str:
         )
     if nut.fit == "trim":
         return (
-            f"By trim: the board ends at {ends.face_mm:.3f} mm, the largest shift; file every "
-            "other string's edge back from that face, at the top."
+            f"By trim: the board ends at {ends.face_mm:.3f} mm; file other edges back from "
+            "there, at the top."
         )
     return (
         f"By overhang: the board ends at {ends.face_mm:.3f} mm; each string's edge reaches over "

@@ -7,7 +7,6 @@ brought nearer by a whole number of millimetres, which the sheet says.
 from __future__ import annotations
 
 import math
-from collections.abc import Sequence
 
 from layout.drawing.legend import (
     MIRRORED,
@@ -16,12 +15,12 @@ from layout.drawing.legend import (
     rows_width_mm,
     say_lines,
     set_rows,
+    with_lettering,
 )
-from layout.drawing.moves import mirrored_shape, shifted
+from layout.drawing.moves import mirrored_shape, shifted_shape
 from layout.drawing.nut import draw_nut, nut_notes, nut_rows
 from layout.drawing.reference import draw_origin_mark
 from layout.drawing.saddle import draw_saddle, saddle_notes, saddle_rows
-from layout.drawing.shapes import Shape, extents_of
 from layout.drawing.sheet import Sheet, make_sheet
 from layout.plan.model import Plan
 
@@ -45,21 +44,21 @@ def draw_nut_saddle(plan: Plan) -> Sheet | None:
     nut, saddle = list(draw_nut(plan)), list(draw_saddle(plan))
     if plan.instrument.hand == "left":
         nut, saddle = ([mirrored_shape(shape) for shape in part] for part in (nut, saddle))
-    nut, saddle = _finished(nut), _finished(saddle)
-    left = extents_of(nut).left
+    at_nut, at_saddle = with_lettering(nut), with_lettering(saddle)
     nut_table, saddle_table = nut_rows(plan), saddle_rows(plan)
-    clear = max(extents_of(nut).right, left + rows_width_mm(nut_table)) + APART_MM
-    moved = WHOLE_MM * math.floor((extents_of(saddle).left - clear) / WHOLE_MM)
-    saddle = list(shifted(make_sheet("part", "part", shapes=saddle), (-moved, 0.0)).shapes)
-    low = min(extents_of(part).low for part in (nut, saddle)) - ROOM_MM
-    tables = [
-        *set_rows(nut_table, corner=(left, low)),
-        *set_rows(saddle_table, corner=(extents_of(saddle).left, low)),
+    clear = max(at_nut.right, at_nut.left + rows_width_mm(nut_table)) + APART_MM
+    moved = WHOLE_MM * math.floor((at_saddle.left - clear) / WHOLE_MM)
+    saddle = [shifted_shape(shape, (-moved, 0.0)) for shape in saddle]
+    low = min(at_nut.low, at_saddle.low) - ROOM_MM
+    parts = [
+        *nut,
+        *saddle,
+        *set_rows(nut_table, corner=(at_nut.left, low)),
+        *set_rows(saddle_table, corner=(at_saddle.left - moved, low)),
     ]
-    parts = _finished([*nut, *saddle, *tables])
     notes = nut_saddle_notes(plan, moved_mm=moved)
     title = f"{plan.instrument.title}: nut and saddle"
-    legend = draw_legend(title, notes, around=extents_of(parts))
+    legend = draw_legend(title, notes, around=with_lettering(parts))
     return make_sheet(
         "nut-saddle", title, shapes=[*parts, *draw_origin_mark(), *legend], notes=notes
     )
@@ -69,10 +68,10 @@ def nut_saddle_notes(plan: Plan, *, moved_mm: float) -> tuple[str, ...]:
     """Say unit, datum, the state of the board, and all that figures alone do not tell."""
     sign, amount = ("plus", moved_mm) if moved_mm >= 0 else ("minus", -moved_mm)
     notes = [
-        "Unit: mm, drawn 1:1. Seen from above, nut at the left.",
-        "Origin: where the nut line crosses the centre line.",
-        f"The saddle is moved on this sheet: its true x is the drawn x {sign} {amount:.0f} mm.",
-        f"State of the wood: {_say_state(plan)}. Nut and saddle come last, after the action.",
+        "Unit: mm, 1:1. Seen from above, nut at the left.",
+        "Origin: the nut line on the centre line.",
+        f"Saddle: its true x is the drawn x {sign} {amount:.0f} mm.",
+        f"State of the wood: {_say_state(plan)}. Done last, after the action.",
         say_lines(offset=False),
         *nut_notes(plan),
         "Nut shift: along the string, + toward the saddle.",
@@ -90,8 +89,3 @@ def _say_state(plan: Plan) -> str:
     if plan.instrument.frets.kind != "lines":
         done.append("fretted")
     return f"the board is {', '.join(done[:-1])}{' and ' if len(done) > 1 else ''}{done[-1]}"
-
-
-def _finished(shapes: Sequence[Shape]) -> list[Shape]:
-    """Give shapes with their lettering drawn out, so that it can be measured."""
-    return list(make_sheet("part", "part", shapes=shapes).shapes)

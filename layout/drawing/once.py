@@ -81,8 +81,9 @@ def draw_once(shapes: Sequence[Shape]) -> list[Shape]:
 
     """
     doubled = _find_doubled(shapes)
+    left_out = doubled | _find_lone_words(shapes)
     order = sorted(
-        (place for place in range(len(shapes)) if place not in doubled),
+        (place for place in range(len(shapes)) if place not in left_out),
         key=lambda place: _rank_of(shapes[place]),
     )
     edges = [
@@ -132,6 +133,44 @@ def _find_doubled(shapes: Sequence[Shape]) -> set[int]:
         else:
             alike.append((middle, shape))
     return doubled
+
+
+def _find_lone_words(shapes: Sequence[Shape]) -> set[int]:
+    """Places of lettering that stands clear of all other shapes: most of a sheet's edges.
+
+    No two edges of a text lie on one another (see ``letter``), so it need not be looked at again.
+    """
+    words = [place for place, shape in enumerate(shapes) if isinstance(shape, Lettering)]
+    if not words:
+        return set()
+    pieces = [
+        piece
+        for shape in shapes
+        if not isinstance(shape, Lettering | Circle | Polyline3D)
+        for piece in pieces_of(shape)
+    ]
+    own = np.array([extents_of([shapes[place]]) for place in words]).reshape(-1, 4)
+    others = np.array([_box_of(piece) for piece in pieces]).reshape(-1, 4)
+    boxes = np.concatenate((own, others))
+    boxes += np.array([-1.0, -1.0, 1.0, 1.0]) * TOLERANCE_MM
+    reach, low, high = boxes[: len(words), None], boxes[None, :, :2], boxes[None, :, 2:]
+    meets = np.all((reach[..., :2] <= high) & (low <= reach[..., 2:]), axis=-1)
+    meets[:, len(words) :] &= _may_reach(pieces, boxes[: len(words)])
+    # Every text meets itself.
+    return {place for place, count in zip(words, meets.sum(axis=1), strict=True) if count == 1}
+
+
+def _may_reach(pieces: Sequence[Piece], boxes: NDArray[np.float64]) -> NDArray[np.bool_]:
+    """Whether the endless line of each piece, (n, m), passes a box; arcs may always."""
+    start = np.array([piece.start for piece in pieces]).reshape(-1, 2)
+    way = np.array([piece.end for piece in pieces]).reshape(-1, 2) - start
+    sides = [
+        way[:, 0] * (y[:, None] - start[:, 1]) - way[:, 1] * (x[:, None] - start[:, 0])
+        for x in (boxes[:, 0], boxes[:, 2])
+        for y in (boxes[:, 1], boxes[:, 3])
+    ]
+    apart = (np.min(sides, axis=0) > 0) | (np.max(sides, axis=0) < 0)
+    return np.asarray(~apart | np.array([piece.bulge != 0 for piece in pieces], dtype=bool))
 
 
 def _kind_of(shape: Circle | Polyline3D | Outline) -> tuple[str, int, bool]:

@@ -184,7 +184,7 @@ def saddle_notes(plan: Plan) -> list[str]:
     notes = [
         "Setback: from the bridge line along the string, + away from the nut.",
         f"From octave: from {octave} along the string to the crown.",
-        "Crown at x from zero along the centre line, y from the centre line, + toward treble.",
+        "Crowns: x from zero, y from the centre line, + toward treble.",
     ]
     if not np.any(plan.ends.setback_mm):
         notes.append("No setback is planned: every crown lies on the bridge line.")
@@ -222,9 +222,9 @@ def _say_strip(plan: Plan) -> list[str]:
     return [
         said,
         (
-            f"Its middle crosses the centre line at {strip.at_centre_mm:.3f} mm, "
-            f"{say_signed(math.degrees(strip.slant), 2)} degrees off square (+: treble end further "
-            "from the nut)."
+            f"Its middle: {strip.at_centre_mm:.3f} mm on the centre line, "
+            f"{say_signed(math.degrees(strip.slant), 2)} degrees off square "
+            "(+: treble end further)."
         ),
     ]
 

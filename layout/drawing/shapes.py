@@ -147,7 +147,7 @@ class Lettering:
     stand
         Whether the anchor is at the foot, half height or head of the capitals.
     strokes
-        The text as outlines; filled in by ``make_sheet``.
+        The text as chains of straight edges; filled in by ``make_sheet``.
 
     """
 
@@ -307,6 +307,10 @@ def extents_of(shapes: Iterable[Shape]) -> Extents:
     xs: list[float] = []
     ys: list[float] = []
     for shape in shapes:
+        if isinstance(shape, Lettering):
+            xs += [x for stroke in shape.strokes for x, _ in stroke.vertices]
+            ys += [y for stroke in shape.strokes for _, y in stroke.vertices]
+            continue
         for piece in pieces_of(shape):
             for x, y in (piece.start, piece.end, *_far_points(piece)):
                 xs.append(x)

@@ -10,7 +10,9 @@ import math
 from collections.abc import Iterable, Sequence
 from dataclasses import dataclass, replace
 
-from layout.drawing.lettering import letter, to_ascii
+import numpy as np
+
+from layout.drawing.lettering import place_strokes, to_ascii
 from layout.drawing.once import draw_once
 from layout.drawing.shapes import (
     LAYERS,
@@ -27,6 +29,9 @@ from layout.drawing.shapes import (
     extents_of,
     on_grid,
 )
+
+LEAST_PLAIN_MM = 0.01
+"""Height from which on no two points of a letter can be rounded to the same."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -188,21 +193,41 @@ def _clean_outline(outline: Outline) -> list[Shape]:
 def _clean_lettering(lettering: Lettering) -> list[Shape]:
     anchor = _rounded(lettering.anchor)
     (height_mm,) = _sizes(lettering.height_mm)
-    strokes = lettering.strokes or tuple(
-        Outline(lettering.layer, stroke, closed=len(stroke) > 2 and stroke[0] == stroke[-1])
-        for stroke in letter(
-            lettering.text,
-            anchor=anchor,
-            height_mm=height_mm,
-            angle=lettering.angle,
-            align=lettering.align,
-            stand=lettering.stand,
-        )
-    )
-    kept = tuple(_as_stroke(clean) for stroke in strokes for clean in _clean(stroke))
     text = to_ascii(lettering.text)
-    whole = replace(lettering, text=text, anchor=anchor, height_mm=height_mm, strokes=kept)
-    return [whole] if kept else []
+    whole = replace(lettering, text=text, anchor=anchor, height_mm=height_mm, strokes=())
+    kept = tuple(_round_strokes(lettering) if lettering.strokes else _draw_strokes(whole))
+    if kept == lettering.strokes and replace(whole, strokes=kept) == lettering:
+        return [lettering] if kept else []
+    return [replace(whole, strokes=kept)] if kept else []
+
+
+def _draw_strokes(lettering: Lettering) -> list[Outline]:
+    """Draw a text; all its points are rounded at once, for a sheet has thousands."""
+    points, counts = place_strokes(
+        lettering.text,
+        anchor=lettering.anchor,
+        height_mm=lettering.height_mm,
+        angle=lettering.angle,
+        align=lettering.align,
+        stand=lettering.stand,
+    )
+    rounded = [(x, y) for x, y in (np.round(points, 6) + 0.0).tolist()]
+    strokes = []
+    end = 0
+    for count in counts:
+        start, end = end, end + count
+        closed = count > 2 and rounded[start] == rounded[end - 1]
+        vertices = tuple(rounded[start : end - 1] if closed else rounded[start:end])
+        strokes.append(Outline(lettering.layer, vertices, closed=closed))
+    if lettering.height_mm < LEAST_PLAIN_MM:  # points may have met
+        return [_as_stroke(clean) for stroke in strokes for clean in _clean_outline(stroke)]
+    return strokes
+
+
+def _round_strokes(lettering: Lettering) -> list[Outline]:
+    if any(any(stroke.bulges) for stroke in lettering.strokes):
+        raise ValueError("the strokes of lettering are straight: they have no bulges")
+    return [_as_stroke(clean) for stroke in lettering.strokes for clean in _clean_outline(stroke)]
 
 
 def _as_stroke(shape: Shape) -> Outline:

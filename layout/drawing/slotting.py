@@ -76,7 +76,7 @@ def slotting_notes(plan: Plan) -> tuple[str, ...]:
     if plan.instrument.nut.zero != "kerf":
         zero = "the nut line"
     notes = [
-        "Unit: mm, drawn 1:1.",
+        "Unit: mm, 1:1.",
         "Origin: middle of the zero notch, on the notched edge.",
         (
             "State of the wood: square blank, not yet tapered. Fix the strip along the blank's "

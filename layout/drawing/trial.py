@@ -99,12 +99,12 @@ def trial_notes(plan: Plan, left_out: tuple[float, ...] = ()) -> tuple[str, ...]
     """Say unit, datum, what the labels mean, the depth, and the state of the wood."""
     depth = cut_depth_mm(plan)
     notes = [
-        "Unit: mm, drawn 1:1.",
+        "Unit: mm, 1:1.",
         "Origin: lower left corner of the scrap.",
-        "State of the wood: a flat scrap of the board's own wood, as thick as the board.",
+        "State of the wood: a flat scrap of the board's wood, as thick.",
         say_lines(offset=offsets_lines(plan)),
-        "Over each slot: the width asked for, and the width it should come out.",
-        "Measure slots and bar, and press a piece of the wire into each.",
+        "Over each slot: width drawn for, and width when cut.",
+        "Measure the bar; press the wire into each slot.",
     ]
     if depth is not None:
         notes.append(f"Depth: {depth:.2f} mm.")

@@ -29,6 +29,7 @@ from layout.drawing.shapes import (
 )
 from layout.drawing.sheet import Sheet
 from layout.files.arcs import Arcs, spell_arcs
+from layout.files.dxf_strokes import add_strokes
 from layout.files.layers import COLOURS, name_layers
 
 if TYPE_CHECKING:
@@ -80,9 +81,9 @@ def render_dxf(
     Notes
     -----
     Lines are LINE, holes CIRCLE, outlines and strokes LWPOLYLINE with bulges (in release 12 flat
-    POLYLINE), slot floors 3D POLYLINE; nothing else is used but ARC. Only the layers that are
-    drawn on are listed, beside the layer 0 that the format demands. Release 12 keeps names in
-    upper case, and so the layers' names are written there.
+    POLYLINE), slot floors 3D POLYLINE; nothing else is used but ARC. Lettering comes last. Only the
+    layers that are drawn on are listed, beside the layer 0 that the format demands. Release 12
+    keeps names in upper case, and so the layers' names are written there.
 
     """
     names = name_layers(layers or {})
@@ -94,11 +95,22 @@ def render_dxf(
     space = document.modelspace()
     for layer in sheet.layers:
         for shape in sheet.on_layer(layer):
-            for spelt in spell_arcs(shape, arcs):
-                _add(space, spelt, names[layer])
+            if not isinstance(shape, Lettering):
+                for spelt in spell_arcs(shape, arcs):
+                    _add(space, spelt, names[layer])
+    owner = space.layout_key
     if version == "r12":
         _keep_to_release_12(document)
-    return _write(document)
+    lines = _write(document)
+    words = [
+        (names[shape.layer], stroke.vertices, stroke.closed)
+        for layer in sheet.layers
+        for shape in sheet.on_layer(layer)
+        if isinstance(shape, Lettering)
+        for stroke in shape.strokes
+    ]
+    add_strokes(lines, words, owner=None if version == "r12" else owner)
+    return "\n".join(lines).encode("ascii")
 
 
 def _new_document(version: DxfVersion) -> Drawing:
@@ -169,12 +181,11 @@ def _add(space: Modelspace, shape: Shape, name: str) -> None:
         case Polyline3D():
             space.add_polyline3d(shape.vertices, dxfattribs=on_layer)
         case Lettering():
-            for stroke in shape.strokes:
-                _add(space, stroke, name)
+            raise AssertionError("lettering is written by ``add_strokes``")
 
 
-def _write(document: Drawing) -> bytes:
-    """Give the file's bytes: LF line ends, no date, no exponent and no minus zero."""
+def _write(document: Drawing) -> list[str]:
+    """Give the file's lines: no date, no exponent and no minus zero."""
     with _fixed_options(), StringIO() as stream:
         document.write(stream)
         lines = stream.getvalue().split("\n")
@@ -184,7 +195,7 @@ def _write(document: Drawing) -> bytes:
             lines[place] = format(Decimal(value), "f")
         elif value == "-0.0" and _holds_float(lines[place - 1]):
             lines[place] = "0.0"
-    return "\n".join(lines).encode("ascii")
+    return lines
 
 
 def _holds_float(code: str) -> bool:

@@ -36,6 +36,9 @@ if TYPE_CHECKING:
     from svgwrite.base import BaseElement
 
 STROKE_MM = 0.1
+MARGIN_MM = 2.0
+"""White around the drawing: half the width of a line lies outside it, and some viewers cut off
+what touches the page's edge."""
 _LARGEST_STEP = math.pi / 3
 """Arcs are written in steps of up to 60 degrees. With four decimals a half circle of 0.3 mm would
 miss its top by 0.005 mm (the radius decides where the centre is); in such steps no arc misses by
@@ -68,7 +71,7 @@ def render_svg(sheet: Sheet, *, layers: Mapping[str, str] | None = None) -> byte
 
     names = name_layers(layers or {})
     page = _Page(sheet)
-    width, height = (_write_number(max(size, STROKE_MM)) for size in page.size)
+    width, height = map(_write_number, page.size)
     drawing = svgwrite.Drawing(
         size=(f"{width}mm", f"{height}mm"), viewBox=f"0 0 {width} {height}", debug=False
     )
@@ -98,8 +101,12 @@ class _Page:
     def __init__(self, sheet: Sheet) -> None:
         # The corner lies on a whole step, so that the origin stated below is exact.
         around = sheet.extents
-        self.left, self.high = _step_down(around.left), -_step_down(-around.high)
-        self.size = (-_step_down(-around.right) - self.left, self.high - _step_down(around.low))
+        self.left = _step_down(around.left) - MARGIN_MM
+        self.high = -_step_down(-around.high) + MARGIN_MM
+        self.size = (
+            -_step_down(-around.right) + MARGIN_MM - self.left,
+            self.high - _step_down(around.low) + MARGIN_MM,
+        )
         x, y = self.place((0.0, 0.0))
         self.origin = (
             f"Origin of the drawing: {x} mm from the left and {y} mm from the top of this page; "
@@ -112,7 +119,7 @@ class _Page:
     def path(self, shape: Shape) -> str:
         """Path data of any shape but a circle."""
         if isinstance(shape, Lettering):
-            return " ".join(self.path(stroke) for stroke in shape.strokes)
+            return self._strokes(shape)
         pieces = pieces_of(shape)
         closed = isinstance(shape, Outline) and shape.closed
         words = ["M", *self.place(pieces[0].start)]
@@ -121,6 +128,20 @@ class _Page:
         if not (closed and pieces[-1].bulge == 0):
             words += self._edge(pieces[-1])
         return " ".join([*words, "Z"] if closed else words)
+
+    def _strokes(self, lettering: Lettering) -> str:
+        """Write all strokes of a text at once: most of a sheet's numbers are theirs."""
+        words: list[str] = []
+        numbers: list[float] = []
+        left, high = self.left, self.high
+        for stroke in lettering.strokes:
+            words.append("M %.4f %.4f" + " L %.4f %.4f" * (len(stroke.vertices) - 1))
+            if stroke.closed:
+                words.append("Z")
+            for x, y in stroke.vertices:
+                numbers += (x - left, high - y)
+        # Every point lies within the page: no number is below 0. Noughts at the end may stay.
+        return " ".join(words) % tuple(numbers)
 
     def _edge(self, piece: Piece) -> list[str]:
         if piece.bulge == 0:

@@ -187,12 +187,19 @@ def deviation_mm(expected: Entity, found: Entity, chord_mm: float = 0.0) -> floa
         gaps = np.hypot(*(mine[:, None, :2] - theirs[None, :, :2]).transpose(2, 0, 1))
         off = max(off, float(gaps.min(axis=1).max()))
     middles, radius = _middles(expected)
-    allowed = radius * CHORD_SHARE * 1.01 if found.chords else 0.0
+    allowed = _sagitta_mm(theirs, radius) if found.chords and radius else 0.0
     if radius and chord_mm:
         allowed = max(allowed, chord_mm)
         between, _ = _middles(found)
         off = max(off, float(_distances(between, expected).max()) - chord_mm)
     return max(off, float(_distances(middles, found).max()) - allowed)
+
+
+def _sagitta_mm(chords: np.ndarray, radius: float) -> float:
+    """How far a reader's own chords of at most a degree may lie from the arc they stand for."""
+    lengths = np.hypot(*np.diff(chords[:, :2], axis=0).T)
+    short = lengths[lengths < radius * np.pi / 180]
+    return float(short.max(initial=0.0) ** 2 / (8 * radius) * 1.01)
 
 
 # --- the comparison ------------------------------------------------------------------------------
@@ -414,7 +421,7 @@ def _read_dxf_gdal(path: Path) -> Reading:
         may_close = kind in {"outline", "circle"} or (kind == "path" and len(points) > 2)
         closed = may_close and bool((points[0] == points[-1]).all())
         vertices = tuple(map(tuple, points[:-1] if closed else points))
-        chords = kind in {"arc", "circle"} or len(vertices) > (2 if kind == "path" else 100)
+        chords = kind in {"arc", "circle"} or len(vertices) > (2 if kind == "path" else 60)
         entities.append(Entity(kind, layer, vertices, (0.0,) * len(vertices), closed, chords))
     return Reading(entities, foreign=foreign)
 

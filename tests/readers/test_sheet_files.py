@@ -251,7 +251,7 @@ def starts_of_entities(tags: list[tuple[int, str]]) -> int:
 def test_svg_is_plain(sheet: Sheet) -> None:
     text = render_svg(sheet).decode("utf-8")
     root = ET.fromstring(text)
-    width, height = sheet.extents.width, sheet.extents.height
+    width, height = sheet.extents.width + 4, sheet.extents.height + 4  # a margin of 2 mm
     box = [float(number) for number in root.attrib["viewBox"].split()]
     assert box == pytest.approx([0, 0, width, height], abs=2.1e-4)
     assert root.attrib["width"] == f"{root.attrib['viewBox'].split()[2]}mm"

@@ -103,7 +103,8 @@ def test_outline_and_strings_are_the_plan_s() -> None:
 
 def test_binding_adds_the_finished_edges() -> None:
     plan = plan_of(board="{binding: 1.5}")
-    along = [shape for shape in on(draw_board(plan), "REF_LINE") if shape.end[0] > 400]
+    lines = [shape for shape in on(draw_board(plan), "REF_LINE") if isinstance(shape, Line)]
+    along = [shape for shape in lines if shape.end[0] > 400]
     edges = [shape for shape in along if shape.start[0] < 1]
     np.testing.assert_allclose(
         [(edge.start, edge.end) for edge in edges],
@@ -130,10 +131,11 @@ def test_the_saddle_strip_is_as_wide_as_the_saddle() -> None:
 
 
 def test_no_strip_is_drawn_while_nothing_is_compensated() -> None:
-    lines = on(draw_board(plan_of()), "REF_LINE")
+    *lines, nut, bridge = on(draw_board(plan_of()), "REF_LINE")
     # the bridge line, and what the board's own end leaves of the nut line
-    assert [shape.start[0] for shape in lines] == [0.0, 0.0, 628.65]
     assert all(isinstance(shape, Line) for shape in lines)
+    assert [shape.start[0] for shape in lines] == [0.0, 0.0, 628.65]
+    assert (nut.text, bridge.text) == ("nut line", "bridge line")
 
 
 def test_every_fret_and_string_is_named_in_the_waste() -> None:

@@ -9,6 +9,7 @@ import shapely
 from hypothesis import given
 from hypothesis import strategies as st
 
+from layout.drawing import once
 from layout.drawing.once import draw_once
 from layout.drawing.shapes import Arc, Circle, Lettering, Line, Outline, Polyline3D, pieces_of
 from layout.drawing.sheet import make_sheet
@@ -187,3 +188,31 @@ def test_nothing_is_lost_and_nothing_is_left_twice(drawn) -> None:
         )
         assert union.distance(middle) < 1e-5
     assert draw_once(kept) == kept
+
+
+def test_lettering_gives_way_to_the_same_lettering() -> None:
+    word = Lettering("ENGRAVE_LABEL", "FRET 12", (3, 4), 3.0)
+    beside = Lettering("ENGRAVE_LABEL", "FRET 12", (3, 9), 3.0)
+    sheet = make_sheet("a", "A", shapes=[word, beside, word])
+    assert sheet == make_sheet("a", "A", shapes=[word, beside])
+    assert [len(shape.strokes) for shape in sheet.shapes] == [len(sheet.shapes[0].strokes)] * 2
+
+
+def test_words_that_stand_clear_are_left_alone_for_good_reason(monkeypatch) -> None:
+    """Looked at again with all the rest, they keep every stroke."""
+    shapes = [
+        *(
+            Lettering("ENGRAVE_LABEL", "HE-LL 40", (12.0 * place, 7.0 * (place % 3)), 3.0, turn)
+            for place, turn in enumerate((0.0, 0.4, 1.5707963267948966, 0.0, -0.3, 0.0))
+        ),
+        Lettering("ENGRAVE_LABEL", "HE-LL 40", (0, 30), 3.0),
+        Line("REF_STRING", (-20, -3), (60, 12)),
+        Line("CUT_SLOT", (0, 1.5), (40, 1.5)),
+        Outline("CUT_OUTLINE", ((-30, -30), (70, -30), (70, 40), (-30, 40)), (0.2, 0, 0, 0)),
+    ]
+    sheet = make_sheet("a", "A", shapes=shapes)
+    found: list[set[int]] = []
+    lone = once._find_lone_words
+    monkeypatch.setattr(once, "_find_lone_words", lambda drawn: found.append(lone(drawn)) or set())
+    assert make_sheet("a", "A", shapes=shapes) == sheet
+    assert 0 < len(found[0]) < 7

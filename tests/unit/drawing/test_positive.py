@@ -10,7 +10,7 @@ from layout.drawing.shapes import Arc, Circle, Lettering, Line, Outline, Polylin
 from layout.drawing.sheet import Sheet, make_sheet
 from layout.files.svg import render_svg
 
-ORIGIN = "Origin: where the nut line crosses the centre line."
+ORIGIN = "Origin: the nut line on the centre line."
 WOOD = ((-3.25, -30.0), (400.0, -30.0), (400.0, 30.0), (-3.25, 30.0))
 
 
@@ -55,7 +55,7 @@ def test_everything_is_moved_by_whole_millimetres() -> None:
 
 def test_the_sheet_says_by_how_much_and_where_the_origin_went() -> None:
     moved, _ = made_positive(board())
-    told = "x 9, y 49: where the nut line crosses the centre line."
+    told = "x 9, y 49: the nut line on the centre line."
     said = "Moved by x 9 mm, y 49 mm, so that no x or y is below 0."
     assert moved.notes == ("Unit: mm.", told, said)
     assert texts(moved) == ["origin 9,49", told, said]

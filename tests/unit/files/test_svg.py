@@ -23,6 +23,7 @@ from layout.drawing.shapes import (
 from layout.drawing.sheet import make_sheet
 from layout.files.svg import render_svg
 
+MARGIN_MM = 2.0
 SPACE = "{http://www.w3.org/2000/svg}"
 
 
@@ -30,12 +31,12 @@ def paths_of(content: bytes) -> list[str]:
     return [part.attrib["d"] for part in ET.fromstring(content).iter(SPACE + "path")]
 
 
-def test_y_is_flipped_and_the_corner_is_the_extents() -> None:
+def test_y_is_flipped_and_the_corner_is_the_extents_with_a_margin() -> None:
     sheet = make_sheet("a", "A", shapes=[Line("CUT_SLOT", (-10, -5), (20.12346, 7))])
-    assert paths_of(render_svg(sheet)) == ["M 0 12 L 30.1235 0"]
+    assert paths_of(render_svg(sheet)) == ["M 2 14 L 32.1235 2"]
     desc = ET.fromstring(render_svg(sheet)).find(SPACE + "desc").text
     assert desc == (
-        "Origin of the drawing: 10 mm from the left and 7 mm from the top of this page; "
+        "Origin of the drawing: 12 mm from the left and 9 mm from the top of this page; "
         "one unit is 1 mm."
     )
 
@@ -62,16 +63,16 @@ def test_closed_outlines_end_with_z() -> None:
         ],
     )
     assert paths_of(render_svg(sheet)) == [
-        "M 0 20 L 10 20 L 10 15 Z",
-        "M 0 11 L 1 10 L 2 11",
-        "M 0 0 L 5 0",
+        "M 2 22 L 12 22 L 12 17 Z",
+        "M 2 13 L 3 12 L 4 13",
+        "M 2 2 L 7 2",
     ]
 
 
 def test_arcs_turn_the_right_way() -> None:
     """A left turn from east to north is a counter-clockwise arc on paper: sweep flag 0."""
     sheet = make_sheet("a", "A", shapes=[Arc("CUT_SLOT", (0, 0), 10, 0, math.pi / 3)])
-    assert re.fullmatch(r"M \S+ \S+ A 10 10 0 0 0 \S+ 0", paths_of(render_svg(sheet))[0])
+    assert re.fullmatch(r"M \S+ \S+ A 10 10 0 0 0 \S+ 2", paths_of(render_svg(sheet))[0])
     back = Outline("CUT_SLOT", ((0, 0), (10, 0)), (-0.2, 0), closed=False)
     assert " 0 0 1 " in paths_of(render_svg(make_sheet("a", "A", shapes=[back])))[0]
 
@@ -86,8 +87,8 @@ def test_four_decimals_keep_arcs_within_a_ten_thousandth() -> None:
             "CUT_SLOT", (chance.uniform(-9, 9), 1), radius, start, start + chance.uniform(0.05, 6)
         )
         sheet = make_sheet("a", "A", shapes=[arc, Line("REF_BAR", (-900, 900), (-800, 900))])
-        left = math.floor(sheet.extents.left * 1e4 + 1e-3) / 1e4
-        high = math.ceil(sheet.extents.high * 1e4 - 1e-3) / 1e4
+        left = math.floor(sheet.extents.left * 1e4 + 1e-3) / 1e4 - MARGIN_MM
+        high = math.ceil(sheet.extents.high * 1e4 - 1e-3) / 1e4 + MARGIN_MM
         numbers = paths_of(render_svg(sheet))[0].replace("M", "").split("A")
         at = tuple(map(float, numbers[0].split()))
         for words in numbers[1:]:
@@ -109,7 +110,7 @@ def test_a_half_circle_of_a_narrow_slot_keeps_its_top() -> None:
     assert words.count("A") == 6
     first = [float(word) for word in words.split("A")[2].split()[-2:]]
     middle = (0.0 - 0.29 * math.cos(math.pi / 6), -0.29 * math.sin(math.pi / 6))
-    assert first[0] == pytest.approx(middle[0] + 0.29, abs=1e-4)
+    assert first[0] == pytest.approx(middle[0] + 0.29 + MARGIN_MM, abs=1e-4)
     assert bulge_through((0, 0.29), (-0.29, 0), (0, -0.29)) == pytest.approx(1)
     assert turn_of(Piece((0, 0.29), (0, -0.29), 1.0)).radius_mm == pytest.approx(0.29)
 
@@ -125,13 +126,13 @@ def test_text_is_escaped_and_control_characters_go() -> None:
     assert root.find(SPACE + "title").text == 'x<&>" Ü'
     assert root.find(SPACE + "desc").text.startswith("]]>\nb\nOrigin")
     (circle,) = root.iter(SPACE + "circle")
-    assert circle.attrib == {"cx": "1", "cy": "1", "r": "1"}
+    assert circle.attrib == {"cx": "3", "cy": "3", "r": "1"}
 
 
 def test_a_single_line_still_has_a_page() -> None:
     sheet = make_sheet("a", "A", shapes=[Line("CUT_SLOT", (0, 0), (9, 0))])
     root = ET.fromstring(render_svg(sheet))
-    assert (root.attrib["width"], root.attrib["height"]) == ("9mm", "0.1mm")
+    assert (root.attrib["width"], root.attrib["height"]) == ("13mm", "4mm")
 
 
 def test_renamed_layers_share_a_group() -> None:
