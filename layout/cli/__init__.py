@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import gc
 import importlib
 import io
 import os
@@ -57,6 +58,9 @@ def group() -> None:
 
 def main() -> None:
     """Run the command line; no traceback reaches the user."""
+    gc.set_threshold(
+        100_000, 50, 50
+    )  # a command lives for a second and makes no cycles to speak of
     if sys.stdout is None:  # closed by the caller: the first file opened would take its place
         click.echo("stopwright: standard output is closed", err=True)
         sys.exit(3)

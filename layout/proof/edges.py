@@ -20,6 +20,8 @@ Points = NDArray[np.complex128]
 Places = NDArray[np.intp]
 Flags = NDArray[np.bool_]
 
+_FEW_PAIRS = 1_000_000
+"""So many boxes are compared one by one sooner than they are sorted."""
 _STRAIGHT = 1e-9
 """A bulge below this bends 1 m of edge by less than 1e-6 mm."""
 
@@ -202,15 +204,30 @@ def boxes_around(edges: Edges, *, margin_mm: float) -> Reals:
     )
 
 
-def make_box_tree(boxes: Reals) -> shapely.STRtree:
-    """Sort boxes (left, low, right, high) so that those near a place are found quickly."""
-    return shapely.STRtree(np.asarray(shapely.box(*boxes.T)))
+class Boxes:
+    """Boxes (left, low, right, high), sorted once many others are held against them."""
+
+    def __init__(self, boxes: Reals) -> None:
+        self._boxes = boxes
+        self._tree: shapely.STRtree | None = None
+
+    def find_meeting(self, others: Reals) -> tuple[Places, Places]:
+        """Give all pairs (place among others, place here) that meet."""
+        if self._tree is None and len(others) * len(self._boxes) < _FEW_PAIRS:
+            left, low, right, high = (side[:, None] for side in others.T)
+            meet = (self._boxes[:, 0] <= right) & (self._boxes[:, 2] >= left)
+            meet &= (self._boxes[:, 1] <= high) & (self._boxes[:, 3] >= low)
+            one, other = np.nonzero(meet)
+            return one, other
+        if self._tree is None:
+            self._tree = shapely.STRtree(_diagonals(self._boxes))
+        one, other = self._tree.query(_diagonals(others))
+        return np.asarray(one, np.intp), np.asarray(other, np.intp)
 
 
-def find_meeting_boxes(boxes: Reals, tree: shapely.STRtree) -> tuple[Places, Places]:
-    """Give all pairs (place among boxes, place in the tree) that meet."""
-    one, other = tree.query(np.asarray(shapely.box(*boxes.T)))
-    return np.asarray(one, np.intp), np.asarray(other, np.intp)
+def _diagonals(boxes: Reals) -> NDArray[np.object_]:
+    """Lines from corner to corner: a tree looks at their boxes alone, and they are made sooner."""
+    return np.asarray(shapely.linestrings(boxes.reshape(-1, 2, 2)))
 
 
 def find_near_points(points: Points, others: Points, *, within_mm: float) -> tuple[Places, Places]:

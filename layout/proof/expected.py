@@ -2,15 +2,14 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator
 from dataclasses import dataclass
-from itertools import pairwise
+from typing import NamedTuple
 
 import numpy as np
 
 from layout.drawing.shapes import ENGRAVE_LABEL, Lettering, Outline, Polyline3D, Shape, pieces_of
 from layout.drawing.sheet import Sheet
-from layout.proof.edges import Edges, Flags, Places, Reals, make_edges
+from layout.proof.edges import Edges, Flags, Places, Reals
 
 _MARGIN_MM = 1.0
 """Lettering that was set anew is looked for this far around the planned one."""
@@ -64,26 +63,29 @@ def expect_sheet(sheet: Sheet, *, spare: frozenset[int] = frozenset()) -> Expect
     (array([40.   ,  6.283,  6.283]), array([0, 1, 1]))
 
     """
-    rows: list[tuple[complex, complex, float, float, float]] = []
+    listed = _Listed([], [], [], [], [])
     first = [0]
-    lettering: list[bool] = []
-    needless: list[bool] = []
     for shape in sheet.shapes:
-        rows.extend(_rows_of(shape))
-        text = is_text(shape)
-        count = len(rows) - first[-1]
-        lettering += [text] * count
-        needless += [text or shape.layer.startswith("REF")] * count
-        first.append(len(rows))
-    edges = make_edges(rows)
+        _list_edges(shape, listed)
+        first.append(len(listed.starts))
+    edges = Edges(
+        np.array(listed.starts, complex),
+        np.array(listed.ends, complex),
+        np.array(listed.bulges, float),
+        np.array(listed.lows, float),
+        np.array(listed.highs, float),
+    )
     starts = np.array(first, np.intp)
+    shape_of = np.repeat(np.arange(len(sheet.shapes)), np.diff(starts))
+    text = np.array([is_text(shape) for shape in sheet.shapes], bool)
+    reference = np.array([shape.layer.startswith("REF") for shape in sheet.shapes], bool)
     return Expected(
         sheet,
         edges,
-        np.repeat(np.arange(len(sheet.shapes)), np.diff(starts)),
+        shape_of,
         starts,
-        np.array(lettering, bool),
-        np.array(needless, bool),
+        text[shape_of],
+        (text | reference)[shape_of],
         _box_texts(sheet, edges, starts),
         spare,
     )
@@ -94,22 +96,44 @@ def is_text(shape: Shape) -> bool:
     return isinstance(shape, Lettering) or shape.layer == ENGRAVE_LABEL
 
 
-def _rows_of(shape: Shape) -> Iterator[tuple[complex, complex, float, float, float]]:
+class _Listed(NamedTuple):
+    """Columns of edges, filled shape by shape: see ``Edges``."""
+
+    starts: list[complex]
+    ends: list[complex]
+    bulges: list[float]
+    lows: list[float]
+    highs: list[float]
+
+
+def _list_edges(shape: Shape, listed: _Listed) -> None:
     match shape:
         case Polyline3D():
-            for (x0, y0, low), (x1, y1, high) in pairwise(shape.vertices):
-                yield complex(x0, y0), complex(x1, y1), 0.0, low, high
+            points = [complex(x, y) for x, y, _ in shape.vertices]
+            heights = [height for *_, height in shape.vertices]
+            before = len(listed.lows)
+            _list_flat(points, listed)
+            listed.lows[before:] = heights[:-1]
+            listed.highs[before:] = heights[1:]
         case Lettering():
             for stroke in shape.strokes:
-                yield from _rows_of(stroke)
+                _list_edges(stroke, listed)
         case Outline(bulges=()):
             points = [complex(x, y) for x, y in shape.vertices]
-            ends = points[1:] + points[:1] if shape.closed else points[1:]
-            for point, ahead in zip(points, ends, strict=False):
-                yield point, ahead, 0.0, 0.0, 0.0
+            _list_flat(points + points[:1] if shape.closed else points, listed)
         case _:
             for start, end, bulge in pieces_of(shape):
-                yield complex(*start), complex(*end), bulge, 0.0, 0.0
+                _list_flat([complex(*start), complex(*end)], listed)
+                listed.bulges[-1] = bulge
+
+
+def _list_flat(points: list[complex], listed: _Listed) -> None:
+    """Add a chain of straight edges in the plane of the drawing."""
+    listed.starts.extend(points[:-1])
+    listed.ends.extend(points[1:])
+    level = [0.0] * (len(points) - 1)
+    for column in (listed.bulges, listed.lows, listed.highs):
+        column.extend(level)
 
 
 def _box_texts(sheet: Sheet, edges: Edges, first: Places) -> Reals:

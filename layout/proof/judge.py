@@ -120,7 +120,7 @@ class _Bench:
         self.deviation_mm = np.zeros(count)
         np.maximum.at(self.deviation_mm, expected.shape, match.deviation_mm)
         self.extra = match.stray_mm > np.minimum(tolerance_mm, found.length_mm / 2)
-        self.in_labels = self._find_labels() & (match.serves < 0)
+        self.in_labels = self._find_labels()
         self.at_once = np.full(len(expected.edges), -1, np.intp)
         owners = np.flatnonzero(match.serves >= 0)
         self.at_once[match.serves[owners]] = owners
@@ -248,13 +248,15 @@ class _Bench:
         return total
 
     def _find_labels(self) -> Flags:
-        """Edges of the file that lie where lettering is planned, and touch nothing else."""
-        boxes = self.expected.label_boxes
-        start, end = self.found.start, self.found.end
-        within = np.zeros(len(self.found), bool)
-        for left, low, right, high in boxes:
+        """Stray edges of the file that lie where lettering is planned, and touch nothing else."""
+        places = np.flatnonzero(self.extra & (self.match.serves < 0))
+        start, end = self.found.start[places], self.found.end[places]
+        within = np.zeros(len(places), bool)
+        for left, low, right, high in self.expected.label_boxes if len(places) else ():
             within |= _inside(start, left, low, right, high) & _inside(end, left, low, right, high)
-        return within
+        flags = np.zeros(len(self.found), bool)
+        flags[places[within]] = True
+        return flags
 
     def name_extra(self) -> tuple[list[Problem], list[Problem]]:
         """Name stray edges: failing, or notes where they only change lettering."""

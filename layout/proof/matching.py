@@ -12,24 +12,27 @@ from dataclasses import dataclass, field
 from typing import NamedTuple
 
 import numpy as np
-import shapely
 from numpy.typing import NDArray
 
 from layout.proof.edges import (
+    Boxes,
     Edges,
     Flags,
     Places,
+    Points,
     Reals,
     boxes_around,
     find_feet,
-    find_meeting_boxes,
     find_near_points,
-    make_box_tree,
     points_along,
 )
 
 SEARCH_MM = 1.0
 """What lies nearer than this to a planned edge was meant to be it."""
+_AS_WRITTEN_MM = 1e-3
+"""Formats round to 1e-4 mm or finer, and two planned edges are never this near to each other."""
+_SLANT = 1 - 0.618j
+"""Turns the order of edges off the axes, along which many lie side by side."""
 _STEP_MM = 1e-6
 _BATCH = 1000
 """Edges cut at a time, so that a file of thousands of long lines does not fill the memory."""
@@ -100,28 +103,69 @@ def match_edges(
         found.length_mm,
         np.zeros(len(found)),
     )
-    pairs = _pair_alike(
-        planned, found, within_mm=min(tolerance_mm, SEARCH_MM / 4), in_space=in_space
-    )
-    mine, theirs, distance = _marry(*pairs)
-    match.served[mine] = True
-    match.serves[theirs] = mine
-    match.deviation_mm[mine] = distance
-    match.uncovered_mm[mine] = match.stray_mm[theirs] = 0.0
+    within_mm = min(tolerance_mm, SEARCH_MM / 4)
+    _settle(match, *pair_in_turn(planned, found, within_mm=within_mm, in_space=in_space))
+    mine, theirs = np.flatnonzero(~match.served), np.flatnonzero(match.serves < 0)
+    if len(mine) and len(theirs):
+        one, other, distance = _marry(
+            *_pair_alike(
+                planned.take(mine), found.take(theirs), within_mm=within_mm, in_space=in_space
+            )
+        )
+        _settle(match, mine[one], theirs[other], distance)
     rest = np.flatnonzero(match.serves < 0)
     if len(rest):
         _match_parts(planned, found, rest, match, tolerance_mm=tolerance_mm, in_space=in_space)
     return match
 
 
+def _settle(match: Match, mine: Places, theirs: Places, distance: Reals) -> None:
+    match.served[mine] = True
+    match.serves[theirs] = mine
+    match.deviation_mm[mine] = distance
+    match.uncovered_mm[mine] = match.stray_mm[theirs] = 0.0
+
+
+def pair_in_turn(
+    planned: Edges, found: Edges, *, within_mm: float, in_space: bool = False
+) -> tuple[Places, Places, Reals]:
+    """Pair edges that lie as near as in a file as it was written; leave the others.
+
+    A quick look: both sides in order along a slanted line, first with first and so on.
+
+    Returns
+    -------
+    arrays
+        Places of planned edges, of found ones, and their distance in mm.
+
+    """
+    if len(planned) != len(found):
+        return np.zeros(0, np.intp), np.zeros(0, np.intp), np.zeros(0)
+    mine, theirs = (np.argsort((_middles(edges) * _SLANT).real) for edges in (planned, found))
+    distance = _compare(planned, found, mine, theirs, in_space=in_space)
+    near = distance <= min(within_mm, _AS_WRITTEN_MM)
+    return mine[near], theirs[near], distance[near]
+
+
 def _pair_alike(
     planned: Edges, found: Edges, *, within_mm: float, in_space: bool
 ) -> tuple[Places, Places, Reals]:
     """Pairs whose ends and middles agree, either way round, the best ones first."""
-    half = np.array([0.5])
-    middle = points_along(planned, np.arange(len(planned)), half)[:, 0]
-    seen = points_along(found, np.arange(len(found)), half)[:, 0]
-    mine, theirs = find_near_points(middle, seen, within_mm=within_mm)
+    mine, theirs = find_near_points(_middles(planned), _middles(found), within_mm=within_mm)
+    distance = _compare(planned, found, mine, theirs, in_space=in_space)
+    near = np.flatnonzero(distance <= within_mm)
+    order = near[np.argsort(distance[near], kind="stable")]
+    return mine[order], theirs[order], distance[order]
+
+
+def _middles(edges: Edges) -> Points:
+    return points_along(edges, np.arange(len(edges)), np.array([0.5]))[:, 0]
+
+
+def _compare(
+    planned: Edges, found: Edges, mine: Places, theirs: Places, *, in_space: bool
+) -> Reals:
+    """Give the larger distance of ends and middles, the better way round, for pairs of edges."""
     ends = []
     for start, end, low, high in (
         (found.start, found.end, found.low, found.high),
@@ -133,10 +177,8 @@ def _pair_alike(
             to_start = np.hypot(to_start, planned.low[mine] - low[theirs])
             to_end = np.hypot(to_end, planned.high[mine] - high[theirs])
         ends.append(np.maximum(to_start, to_end))
-    distance = np.maximum(np.minimum(*ends), np.abs(middle[mine] - seen[theirs]))
-    near = np.flatnonzero(distance <= within_mm)
-    order = near[np.argsort(distance[near], kind="stable")]
-    return mine[order], theirs[order], distance[order]
+    aside = np.abs(_middles(planned)[mine] - _middles(found)[theirs])
+    return np.asarray(np.maximum(np.minimum(*ends), aside))
 
 
 def _marry(mine: Places, theirs: Places, distance: Reals) -> tuple[Places, Places, Reals]:
@@ -180,7 +222,7 @@ def _match_parts(
     tolerance_mm: float,
     in_space: bool,
 ) -> None:
-    boxes = make_box_tree(boxes_around(planned, margin_mm=SEARCH_MM))
+    boxes = Boxes(boxes_around(planned, margin_mm=SEARCH_MM))
     batches = []
     for begin in range(0, len(rest), _BATCH):
         cut = _cut_at_planned_ends(planned, boxes, found, rest[begin : begin + _BATCH])
@@ -215,10 +257,8 @@ def _match_parts(
             match.stray_mm[stretch.owner] += max(stretch.high - stretch.low, tolerance_mm * 2)
 
 
-def _cut_at_planned_ends(
-    planned: Edges, boxes: shapely.STRtree, found: Edges, rest: Places
-) -> _Parts:
-    one, edge = find_meeting_boxes(boxes_around(found.take(rest), margin_mm=0.0), boxes)
+def _cut_at_planned_ends(planned: Edges, boxes: Boxes, found: Edges, rest: Places) -> _Parts:
+    one, edge = boxes.find_meeting(boxes_around(found.take(rest), margin_mm=0.0))
     owner = rest[one]
     ends = np.column_stack((planned.start[edge], planned.end[edge]))
     feet = find_feet(ends, found, owner)
@@ -236,7 +276,7 @@ def _cut_at_planned_ends(
 
 
 def _choose_planned(
-    planned: Edges, boxes: shapely.STRtree, found: Edges, parts: _Parts, *, in_space: bool
+    planned: Edges, boxes: Boxes, found: Edges, parts: _Parts, *, in_space: bool
 ) -> tuple[Places, Reals, Reals]:
     """For every part: the nearest planned edge or -1, how far, and which shares of it it covers."""
     count = len(parts.owner)
@@ -250,7 +290,7 @@ def _choose_planned(
             points.imag.max(axis=1),
         )
     )
-    part, edge = find_meeting_boxes(around, boxes)
+    part, edge = boxes.find_meeting(around)
     feet = find_feet(points[part], planned, edge)
     distance = feet.distance_mm
     if in_space:

@@ -28,6 +28,10 @@ from layout.proof.similarity import Similarity, find_similarity, move_edges
 
 TOLERANCE_MM = 0.01
 """A tenth of what a careful hand marks, and a tenth of a router's backlash."""
+PAGE_MARGIN_MM = 2.0
+"""White around the drawing on an SVG page."""
+_MOST_MEASURED = 2
+"""Sheets that a file of no known name is measured against in full."""
 READERS: dict[str, Callable[[bytes], Reading]] = {"dxf": read_dxf, "svg": read_svg}
 """Which reader takes files that end in what."""
 
@@ -96,6 +100,9 @@ def prove_files(
         page = _ending(name) == "svg"
         owner = find_sheet_name(name, sheets)
         choice = [owner] if owner else list(sheets)
+        if len(choice) > _MOST_MEASURED:
+            possible = {each: expect(each) for each in choice}
+            choice = _prefer_sheets(reading, possible, page=page, tolerance_mm=tolerance_mm)
         proofs = [
             replace(
                 _prove(name, reading, expect(each), page=page, tolerance_mm=tolerance_mm),
@@ -105,6 +112,19 @@ def prove_files(
         ]
         reports.append(max(proofs, key=_fit))
     return Report(tuple(reports), tolerance_mm)
+
+
+def _prefer_sheets(
+    reading: Reading, possible: Mapping[str, Expected], *, page: bool, tolerance_mm: float
+) -> list[str]:
+    """Name the few sheets whose corners most are in a file: only those are measured."""
+    met = {}
+    for name, expected in possible.items():
+        anchor = _page_corner(expected.sheet) if page else 0j
+        placed = move_edges(reading.edges, PlaneMap(1, 0, anchor))
+        whole = find_similarity(expected, placed, anchor=anchor, tolerance_mm=tolerance_mm)
+        met[name] = whole.met
+    return sorted(met, key=lambda name: -met[name])[:_MOST_MEASURED]
 
 
 def _prove_pdf(
@@ -185,10 +205,10 @@ def _prove(
 
 
 def _page_corner(sheet: Sheet) -> complex:
-    """Where the upper left corner of an SVG page lies: on the next whole 1e-4 mm outside."""
+    """Where the upper left corner of an SVG page lies: outside a margin, on a whole 1e-4 mm."""
     left = math.floor(round(sheet.extents.left * 1e4, 2)) / 1e4
     high = math.ceil(round(sheet.extents.high * 1e4, 2)) / 1e4
-    return complex(left, high)
+    return complex(left - PAGE_MARGIN_MM, high + PAGE_MARGIN_MM)
 
 
 def _allow_corner(

@@ -12,6 +12,7 @@ from __future__ import annotations
 import math
 import re
 from collections.abc import Callable, Iterator
+from itertools import pairwise
 from typing import NamedTuple
 
 from layout.proof.reading import Pen, Reading, broken_reading
@@ -28,25 +29,42 @@ _UNITS: dict[str, tuple[str, float]] = {
 }
 """$INSUNITS to name and mm (DXF Reference, header section)."""
 _BINARY = b"AutoCAD Binary DXF"
-_CODE = re.compile(r"\s*-?[0-9]{1,4}\s*")
+_CODE = re.compile(r"[ \t]*-?[0-9]{1,4}[ \t]*")
 _WRITING = {
     "TEXT", "MTEXT", "ATTRIB", "ATTDEF", "DIMENSION", "LEADER", "VIEWPORT", "POINT", "IMAGE",
 }  # fmt: skip
 """Entities that no cutter follows."""
+_PLAIN = {5, 6, 8, 62, 70, 90, 100, 102, 330, 370}
+"""Groups of a light polyline that stands in the plane, besides its vertices."""
 _CLOSED, _IN_SPACE, _FITTED = 1, 8, 2 | 4 | 16 | 64
 """Flags of a polyline (group 70): closed, 3D, and the kinds that are curves or meshes."""
 
 
 class _Record(NamedTuple):
-    """An entity, or the like: its kind, its groups, and the line of the file it starts on."""
+    """An entity, or the like: its kind, its groups, and the line of the file it starts on.
+
+    Groups are codes and, in as many places, values.
+    """
 
     kind: str
-    groups: list[tuple[int, str]]
+    codes: list[int]
+    values: list[str]
     line: int
 
     @property
+    def groups(self) -> dict[int, str]:
+        """By code; of several groups with one code the last."""
+        return dict(zip(self.codes, map(str.strip, self.values), strict=True))
+
+    def first(self, code: int, missing: str) -> str:
+        """Give the first value with a code."""
+        if code not in self.codes:
+            return missing
+        return self.values[self.codes.index(code)].strip()
+
+    @property
     def layer(self) -> str:
-        return next((value for code, value in self.groups if code == 8), "0")
+        return self.first(8, "0")
 
 
 class _BadNumberError(Exception):
@@ -92,39 +110,43 @@ def read_dxf(content: bytes) -> Reading:
 def _split(text: str) -> tuple[list[_Record], str]:
     """Cut the text into records; say what breaks it off, if anything does."""
     lines = text.replace("\r\n", "\n").replace("\r", "\n").split("\n")
+    written, values = lines[0:-1:2], lines[1::2]
+    fault = "the file breaks off before its end mark (EOF)"
+    known = {code: int(code) for code in set(written) if _CODE.fullmatch(code)}
+    try:
+        codes = [known[code] for code in written]
+    except KeyError as strange:
+        count = written.index(strange.args[0])
+        codes = [known[code] for code in written[:count]]
+        if any(map(str.strip, lines[2 * count :])):
+            fault = f"line {2 * count + 1} should be a group code"
+    if 999 in known.values():  # comments
+        said = [place for place, code in enumerate(codes) if code != 999]
+        codes, values = [codes[place] for place in said], [values[place] for place in said]
+    else:
+        said = []
     records: list[_Record] = []
-    groups: list[tuple[int, str]] = []
-    codes: dict[str, int] = {}
-    for place in range(0, len(lines) - 1, 2):
-        written = lines[place]
-        code = codes.get(written)
-        if code is None:
-            if not _CODE.fullmatch(written):
-                if not written.strip() and not any(map(str.strip, lines[place:])):
-                    break
-                return records, f"line {place + 1} should be a group code"
-            code = codes[written] = int(written)
-        if code == 0:
-            kind = lines[place + 1].strip()
-            groups = []
-            records.append(_Record(kind, groups, place + 1))
-            if kind == "EOF":
-                return records, ""
-        elif code != 999:
-            groups.append((code, lines[place + 1].strip()))
-    return records, "the file breaks off before its end mark (EOF)"
+    begins = [place for place, code in enumerate(codes) if code == 0]
+    for begin, end in pairwise([*begins, len(codes)]):
+        kind = values[begin].strip()
+        line = 2 * (said[begin] if said else begin) + 1
+        inner = slice(begin + 1, end)
+        records.append(_Record(kind, codes[inner], values[inner], line))
+        if kind == "EOF":
+            return records, ""
+    return records, fault
 
 
-def _find_sections(records: list[_Record]) -> tuple[list[tuple[int, str]], list[_Record]]:
-    """Give the groups of the header, and the records of the entities section."""
-    header: list[tuple[int, str]] = []
+def _find_sections(records: list[_Record]) -> tuple[_Record | None, list[_Record]]:
+    """Give the header, and the records of the entities section."""
+    header: _Record | None = None
     entities: list[_Record] = []
     section = ""
     for record in records:
         if record.kind == "SECTION":
-            section = next((value for code, value in record.groups if code == 2), "")
+            section = record.first(2, "")
             if section == "HEADER":
-                header = record.groups
+                header = record
         elif record.kind == "ENDSEC":
             section = ""
         elif section == "ENTITIES":
@@ -135,18 +157,19 @@ def _find_sections(records: list[_Record]) -> tuple[list[tuple[int, str]], list[
 def _note_hidden_layers(records: list[_Record], pen: Pen) -> None:
     """Note layers that are off or frozen: many programs do not cut what they do not show."""
     for record in records:
-        groups = dict(record.groups)
-        if record.kind == "LAYER" and (
-            groups.get(62, "").startswith("-") or groups.get(70, "0") in {"1", "65"}
-        ):
+        if record.kind != "LAYER":
+            continue
+        groups = record.groups
+        if groups.get(62, "").startswith("-") or groups.get(70, "0") in {"1", "65"}:
             said = f"layer {groups.get(2, '')} is switched off in the file"
             pen.notes.append(Problem("hidden-layer", said))
 
 
-def _read_unit(header: list[tuple[int, str]], pen: Pen) -> tuple[str, float]:
-    for place, (code, value) in enumerate(header[:-1]):
-        if code == 9 and value == "$INSUNITS":
-            declared = header[place + 1][1]
+def _read_unit(header: _Record | None, pen: Pen) -> tuple[str, float]:
+    words = [] if header is None else [value.strip() for value in header.values]
+    for place, value in enumerate(words[:-1]):
+        if value == "$INSUNITS" and header is not None and header.codes[place] == 9:
+            declared = words[place + 1]
             if declared in _UNITS:
                 return _UNITS[declared]
             pen.faults.append(Problem("unit", f"the file counts in unit {declared!r}, not in mm"))
@@ -157,7 +180,7 @@ def _read_unit(header: list[tuple[int, str]], pen: Pen) -> tuple[str, float]:
 def _draw_all(entities: list[_Record], pen: Pen) -> None:
     strange: dict[str, int] = {}
     for record, vertices in _gather_vertices(entities):
-        if dict(record.groups).get(67) == "1":
+        if 67 in record.codes and record.groups[67] == "1":
             strange["paper space"] = strange.get("paper space", 0) + 1
             continue
         draw = _DRAWN.get(record.kind)
@@ -242,7 +265,7 @@ def _over(point: complex) -> complex:
 
 
 def _draw_line(record: _Record, _: list[_Record], pen: Pen) -> bool:
-    groups = dict(record.groups)
+    groups = record.groups
     pen.begin(record.layer, closed=False)
     pen.draw(
         _point(groups, 10), _point(groups, 11), low=_height(groups, 30), high=_height(groups, 31)
@@ -252,7 +275,7 @@ def _draw_line(record: _Record, _: list[_Record], pen: Pen) -> bool:
 
 def _draw_round(record: _Record, _: list[_Record], pen: Pen) -> bool:
     """ARC or CIRCLE."""
-    groups = dict(record.groups)
+    groups = record.groups
     centre, radius = _point(groups, 10), _number(groups[40])
     height, over = _height(groups, 30), _turned_over(groups)
     if over is None:
@@ -271,10 +294,12 @@ def _draw_round(record: _Record, _: list[_Record], pen: Pen) -> bool:
 
 
 def _draw_light_polyline(record: _Record, _: list[_Record], pen: Pen) -> bool:
+    if _draw_straight(record, pen):
+        return True
     points: list[complex] = []
     bulges: list[float] = []
     plain: dict[int, str] = {}
-    for code, value in record.groups:
+    for code, value in zip(record.codes, map(str.strip, record.values), strict=True):
         if code == 10:
             points.append(complex(_number(value), math.nan))
             bulges.append(0.0)
@@ -293,12 +318,41 @@ def _draw_light_polyline(record: _Record, _: list[_Record], pen: Pen) -> bool:
     return _draw_vertices(record, points, bulges, plain, closed=closed, pen=pen)
 
 
+def _draw_straight(record: _Record, pen: Pen) -> bool:
+    """Draw a straight chain in the plane at once; False leaves it to the slow way."""
+    codes, count = record.codes, record.codes.count(10)
+    first = codes.index(10) if count > 1 else 0
+    vertices = slice(first, first + 2 * count)
+    if count < 2 or len(codes) != vertices.stop or codes[vertices] != [10, 20] * count:
+        return False
+    values = record.values
+    plain = dict(zip(codes[:first], map(str.strip, values), strict=False))
+    if not _PLAIN.issuperset(plain) or plain.get(90) != str(count):
+        return False
+    flags = plain.get(70, "0")
+    numbers = _read_numbers(values[vertices])
+    if flags not in {"0", "1"} or not numbers:
+        return False
+    points = list(map(complex, numbers[::2], numbers[1::2]))
+    pen.draw_straight(record.layer, points, closed=flags == "1")
+    return True
+
+
+def _read_numbers(values: list[str]) -> list[float]:
+    """Read numbers; none where any value is not a finite one."""
+    try:
+        numbers = list(map(float, values))
+    except ValueError:
+        return []
+    return numbers if math.isfinite(sum(numbers)) and "_" not in "".join(values) else []
+
+
 def _draw_polyline(record: _Record, vertices: list[_Record], pen: Pen) -> bool:
-    plain = dict(record.groups)
+    plain = record.groups
     flags = _whole(plain.get(70, "0"))
     if flags & _FITTED:
         return False
-    rows = [dict(vertex.groups) for vertex in vertices]
+    rows = [vertex.groups for vertex in vertices]
     points = [_point(row, 10) for row in rows]
     closed = bool(flags & _CLOSED)
     if flags & _IN_SPACE:

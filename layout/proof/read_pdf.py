@@ -1,6 +1,7 @@
 """What is drawn on the pages of a PDF file?
 
-A general library opens the file and unpacks the pages' contents; what they draw is followed here.
+Plain files are opened and unpacked here, others by a general library; what the pages' contents
+draw is followed here.
 
 References
 ----------
@@ -19,6 +20,7 @@ from dataclasses import dataclass
 from io import BytesIO
 from typing import TYPE_CHECKING, Final
 
+from layout.proof.pdf_file import PlainPage, find_plain_pages
 from layout.proof.plane_map import PlaneMap, make_matrix
 from layout.proof.reading import Pen, Reading, broken_reading
 from layout.proof.report import Problem
@@ -35,6 +37,9 @@ _TOKEN = re.compile(
     rb"|(?P<word>[A-Za-z'\"*][A-Za-z0-9'\"*]*)",
     re.DOTALL,
 )
+_POINT = rb"-?[0-9]+(?:\.[0-9]+)? -?[0-9]+(?:\.[0-9]+)? "
+_CHAIN = re.compile(rb"\s*(%sm(?:\s%sl)+)(\sh)?\sS\s" % (_POINT, _POINT))
+"""A chain of straight lines that is drawn and stroked, as most of a drawing is."""
 _MOST_PAGES = 500
 
 
@@ -80,7 +85,15 @@ def read_pdf(content: bytes) -> Pages:
     if not content.rstrip().endswith(b"%%EOF"):
         said = "the file breaks off before its end mark (%%EOF)"
         return Pages((), (Problem("truncated", said),))
-    # pypdf takes 0.3 s to import: only a proof of PDF files pays it.
+    plain = find_plain_pages(content, most=_MOST_PAGES)
+    if plain is not None:
+        return Pages(tuple(map(_read_page, plain)))
+    return _read_any(content)
+
+
+def _read_any(content: bytes) -> Pages:
+    """Read a file of any structure."""
+    # pypdf takes longer to import than a plain file to read: only other files pay it.
     from pypdf import PdfReader  # noqa: PLC0415
 
     log = logging.getLogger("pypdf")
@@ -89,7 +102,7 @@ def read_pdf(content: bytes) -> Pages:
         sheets = PdfReader(BytesIO(content), strict=True).pages
         if not 0 < len(sheets) <= _MOST_PAGES:
             return Pages((), (Problem("unreadable", f"the file has {len(sheets)} pages"),))
-        return Pages(tuple(_read_page(sheet) for sheet in sheets))
+        return Pages(tuple(_read_page(_unfold(sheet)) for sheet in sheets))
     except Exception as fault:  # noqa: BLE001  the library raises anything over a damaged file
         said = f"the file is damaged ({type(fault).__name__})"
         return Pages((), (Problem("unreadable", said),))
@@ -97,20 +110,25 @@ def read_pdf(content: bytes) -> Pages:
         log.disabled = before
 
 
-def _read_page(sheet: PageObject) -> Page:
-    unit_mm = _MM_PER_POINT * float(sheet.get("/UserUnit", 1))
+def _unfold(sheet: PageObject) -> PlainPage:
     left, low, right, high = (float(side) for side in sheet.mediabox)
-    to_page = PlaneMap(unit_mm, 0, -unit_mm * complex(min(left, right), min(low, high)))
-    width, height = abs(right - left) * unit_mm, abs(high - low) * unit_mm
-    quarter = int(sheet.get("/Rotate", 0)) // 90 % 4
-    for _ in range(quarter):  # clockwise, as seen
-        to_page = PlaneMap(-1j, 0, complex(0, width)).after(to_page)
-        width, height = height, width
     contents = sheet.get_contents()
     stream = b"" if contents is None else contents.get_data()
+    turn, unit = int(sheet.get("/Rotate", 0)), float(sheet.get("/UserUnit", 1))
+    return PlainPage((left, low, right, high), turn, unit, stream)
+
+
+def _read_page(sheet: PlainPage) -> Page:
+    unit_mm = _MM_PER_POINT * sheet.unit
+    left, low, right, high = sheet.box
+    to_page = PlaneMap(unit_mm, 0, -unit_mm * complex(min(left, right), min(low, high)))
+    width, height = abs(right - left) * unit_mm, abs(high - low) * unit_mm
+    for _ in range(sheet.turn // 90 % 4):  # clockwise, as seen
+        to_page = PlaneMap(-1j, 0, complex(0, width)).after(to_page)
+        width, height = height, width
     if not (0 < width < math.inf and 0 < height < math.inf):
         return Page(0.0, 0.0, broken_reading("bad-number", "the page has no size"))
-    return Page(width, height, _Walk(to_page).follow(stream))
+    return Page(width, height, _Walk(to_page).follow(sheet.contents))
 
 
 class _Walk:
@@ -136,6 +154,8 @@ class _Walk:
 
     def _step(self, operator: str, numbers: list[float]) -> None:
         match operator:
+            case "chain" | "closed chain":
+                self._draw_chain(numbers, closed=operator != "chain")
             case "q":
                 self.kept.append(self.to_page)
             case "Q":
@@ -151,6 +171,16 @@ class _Walk:
                 self.placed += 1
             case _:
                 self._build(operator, numbers)
+
+    def _draw_chain(self, numbers: list[float], *, closed: bool) -> None:
+        a, c, b = self.to_page
+        points = list(map(complex, numbers[::2], numbers[1::2]))
+        points = [a * point + c * point.conjugate() + b for point in points]
+        if self.chains:  # painted together with what was built before
+            self.chains.append((points, closed))
+            self._stroke(close=False)
+        else:
+            self.pen.draw_chain("page", points, closed=closed)
 
     def _build(self, operator: str, numbers: list[float]) -> None:
         points = [
@@ -193,10 +223,17 @@ class _Walk:
 
 
 def _split(stream: bytes) -> Iterator[tuple[str, list[float]]]:
-    """Give every operator with the numbers before it."""
+    """Give every operator with the numbers before it; simple chains whole."""
     numbers: list[float] = []
     reached = 0
     while reached < len(stream):
+        chain = None if numbers else _CHAIN.match(stream, reached)
+        if chain is not None:
+            reached = chain.end() - 1
+            words = chain[1].split()
+            del words[2::3]
+            yield "closed chain" if chain[2] else "chain", list(map(float, words))
+            continue
         match = _TOKEN.match(stream, reached)
         if match is None:
             reached += 1

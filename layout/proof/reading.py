@@ -87,9 +87,13 @@ class Pen:
     array([9.        , 4.        , 9.8488578])
     """
 
-    rows: list[tuple[complex, complex, float, float, float]] = field(default_factory=list)
-    on_layer: list[int] = field(default_factory=list)
-    in_contour: list[int] = field(default_factory=list)
+    starts: list[complex] = field(default_factory=list)
+    ends: list[complex] = field(default_factory=list)
+    bulges: list[float] = field(default_factory=list)
+    lows: list[float] = field(default_factory=list)
+    highs: list[float] = field(default_factory=list)
+    contour_first: list[int] = field(default_factory=list)
+    contour_layer: list[int] = field(default_factory=list)
     contour_closed: list[bool] = field(default_factory=list)
     names: dict[str, int] = field(default_factory=dict)
     faults: list[Problem] = field(default_factory=list)
@@ -112,6 +116,9 @@ class Pen:
                 Problem("zero-length", f"on layer {layer} a chain has a single point", 1.0)
             )
             return
+        if not bulges and not heights:
+            self.draw_straight(layer, points, closed=closed)
+            return
         self.begin(layer, closed=closed)
         for place in range(count if closed else count - 1):
             ahead = (place + 1) % count
@@ -124,6 +131,19 @@ class Pen:
                 low=heights[place] if heights else 0.0,
                 high=heights[ahead] if heights else 0.0,
             )
+
+    def draw_straight(self, layer: str, points: Sequence[complex], *, closed: bool) -> None:
+        """Add a chain of straight edges in the plane, of two points or more, all at once."""
+        self.begin(layer, closed=closed)
+        self.starts += points[:-1]
+        self.ends += points[1:]
+        if closed and not abs(points[0] - points[-1]) <= SAME_MM:
+            self.starts.append(points[-1])
+            self.ends.append(points[0])
+        level = [0.0] * (len(self.starts) - len(self.bulges))
+        self.bulges += level
+        self.lows += level
+        self.highs += level
 
     def draw_circle(self, layer: str, centre: complex, radius: float, *, height: float = 0) -> None:
         """Add a whole circle."""
@@ -159,8 +179,8 @@ class Pen:
     def begin(self, layer: str, *, closed: bool) -> None:
         """Start a chain."""
         self.contour_closed.append(closed)
-        self.names.setdefault(layer, len(self.names))
-        self._layer = self.names[layer]
+        self.contour_layer.append(self.names.setdefault(layer, len(self.names)))
+        self.contour_first.append(len(self.starts))
 
     def close(self) -> None:
         """Say that the chain that was begun last is closed."""
@@ -178,25 +198,25 @@ class Pen:
             self.draw(start, middle, half, low=low, high=level)
             self.draw(middle, end, half, low=level, high=high)
             return
-        self.rows.append((start, end, bulge, low, high))
-        self.on_layer.append(self._layer)
-        self.in_contour.append(len(self.contour_closed) - 1)
-
-    _layer: int = 0
+        self.starts.append(start)
+        self.ends.append(end)
+        self.bulges.append(bulge)
+        self.lows.append(low)
+        self.highs.append(high)
 
     def finish(self, *, unit: str, factor: float = 1.0) -> Reading:
         """Give the reading, in mm: all numbers times ``factor``."""
-        edges = make_edges(self.rows)
         edges = Edges(
-            edges.start * factor,
-            edges.end * factor,
-            edges.bulge,
-            edges.low * factor,
-            edges.high * factor,
+            np.array(self.starts, np.complex128) * complex(factor),
+            np.array(self.ends, np.complex128) * complex(factor),
+            np.array(self.bulges, float),
+            np.array(self.lows, float) * factor,
+            np.array(self.highs, float) * factor,
         )
-        layer = np.array(self.on_layer, np.intp)
-        contour = np.array(self.in_contour, np.intp)
-        closed = np.array(self.contour_closed, bool)[contour] if len(contour) else np.zeros(0, bool)
+        counts = np.diff([*self.contour_first, len(self.starts)])
+        contour = np.repeat(np.arange(len(self.contour_first)), counts)
+        layer = np.array(self.contour_layer, np.intp)[contour]
+        closed = np.array(self.contour_closed, bool)[contour]
         names = tuple(self.names)
         sizes = np.maximum(np.abs(edges.start), np.abs(edges.end)) + np.abs(edges.bulge)
         sizes = sizes + np.maximum(np.abs(edges.low), np.abs(edges.high))

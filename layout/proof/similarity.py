@@ -13,9 +13,11 @@ from dataclasses import dataclass
 
 import numpy as np
 import shapely
+from numpy.typing import NDArray
 
 from layout.proof.edges import Edges, Points, find_near_points
 from layout.proof.expected import Expected
+from layout.proof.matching import pair_in_turn
 from layout.proof.plane_map import UNMOVED, PlaneMap
 from layout.proof.report import Problem
 
@@ -50,6 +52,8 @@ _LONGEST = 8
 _FIRST_LOOK = 40
 _ENOUGH = 0.5
 """Share of the probes that must be met before the whole drawing is said to be moved."""
+_AGREES = 0.98
+"""The same for a drawing that is left alone."""
 _FEW = 6
 """Points that any drawing may meet another one in."""
 _NEARLY_ALL = 0.85
@@ -66,11 +70,14 @@ class Similarity:
         Takes points of the file to where the sheet has them.
     problems
         What that means, named.
+    met
+        Share of the corners looked at that are in the file then.
 
     """
 
     to_sheet: PlaneMap
     problems: tuple[Problem, ...]
+    met: float = 1.0
 
 
 def find_similarity(
@@ -89,13 +96,14 @@ def find_similarity(
         A drawing that agrees within this is left alone.
 
     """
-    if not len(found):
+    in_turn, _, _ = pair_in_turn(expected.edges, found, within_mm=tolerance_mm)
+    if len(in_turn) >= _AGREES * len(found):  # nothing is drawn, or all as it was planned
         return Similarity(UNMOVED, ())
     probes = _choose_probes(expected)
     seen = np.unique(np.concatenate((found.start, found.end)))
-    most = min(len(probes), len(seen))
+    most = max(1, min(len(probes), len(seen)))
     stays = _count_met(UNMOVED, probes, seen, within_mm=tolerance_mm)
-    if stays >= 0.98 * most:
+    if stays >= _AGREES * most:
         return Similarity(UNMOVED, ())
     best, met = UNMOVED, stays
     for guess in _rank_guesses(expected, found, probes, seen, tolerance_mm=tolerance_mm):
@@ -105,10 +113,11 @@ def find_similarity(
             best, met = refined, count
     # A few more points met by chance are no reason to call the drawing moved.
     if met < (_FEW if _is_plain(best) else 2 * _FEW):
-        return Similarity(UNMOVED, ())
+        return Similarity(UNMOVED, (), stays / most)
     if met < stays + 0.1 * most or met < (_ENOUGH if _is_plain(best) else _NEARLY_ALL) * most:
-        return Similarity(UNMOVED, ())
-    return Similarity(best, tuple(_name(best, anchor=anchor, tolerance_mm=tolerance_mm)))
+        return Similarity(UNMOVED, (), stays / most)
+    named = tuple(_name(best, anchor=anchor, tolerance_mm=tolerance_mm))
+    return Similarity(best, named, met / most)
 
 
 def move_edges(edges: Edges, by: PlaneMap) -> Edges:
@@ -151,16 +160,31 @@ def _rank_guesses(
     """The best guesses, by a first look at a few probes."""
     few = probes[:: max(1, len(probes) // _FIRST_LOOK)]
     tree = shapely.STRtree(np.asarray(shapely.points(seen.real, seen.imag)))
-    scored = []
-    for place, guess in enumerate(_guess(expected, found)):
-        if not 1e-5 < guess.scale < 1e5 or abs(abs(guess.a) - abs(guess.c)) < 1e-6:
-            continue
-        where = _move(few, guess.back())
-        nearest = tree.nearest(np.asarray(shapely.points(where.real, where.imag)))
-        away = np.abs(_move(seen[nearest], guess) - few)
-        scored.append((-int(np.count_nonzero(away <= 5 * tolerance_mm)), place, guess))
-    scored.sort(key=lambda row: row[:2])
-    return [guess for count, _, guess in scored[:4] if count < 0]
+    guesses = [
+        guess
+        for guess in _guess(expected, found)
+        if 1e-5 < guess.scale < 1e5 and abs(abs(guess.a) - abs(guess.c)) >= 1e-6
+    ]
+    # A glance at every fifth point first: a right guess meets one of them all but surely.
+    glance = _count_near(guesses, few[::5], seen, tree, within_mm=5 * tolerance_mm)
+    guesses = [guesses[place] for place in np.flatnonzero(glance)]
+    counts = _count_near(guesses, few, seen, tree, within_mm=5 * tolerance_mm)
+    return [guesses[place] for place in np.argsort(-counts, kind="stable")[:4]]
+
+
+def _count_near(
+    guesses: list[PlaneMap], few: Points, seen: Points, tree: shapely.STRtree, *, within_mm: float
+) -> NDArray[np.intp]:
+    """Count for every guess how many points of the sheet it brings one of the file near to."""
+    if not guesses:
+        return np.zeros(0, np.intp)
+    there = np.array([guess.back() for guess in guesses])[:, :, None]
+    where = there[:, 0] * few + there[:, 1] * np.conj(few) + there[:, 2]
+    nearest = tree.nearest(np.asarray(shapely.points(where.real.ravel(), where.imag.ravel())))
+    met = seen[nearest].reshape(where.shape)
+    here = np.array(guesses)[:, :, None]
+    away = np.abs(here[:, 0] * met + here[:, 1] * np.conj(met) + here[:, 2] - few)
+    return np.asarray(np.count_nonzero(away <= within_mm, axis=1))
 
 
 def _guess(expected: Expected, found: Edges) -> Iterator[PlaneMap]:

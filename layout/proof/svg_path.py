@@ -27,6 +27,9 @@ _APART = r"[\s,]*"
 _ARC = re.compile(
     _APART + _APART.join((f"({NUMBER})",) * 3 + ("([01])",) * 2 + (f"({NUMBER})",) * 2)
 )
+_POINT = r"\s*[+-]?[0-9]+(?:\.[0-9]*)?(?:\s*,\s*|\s+)[+-]?[0-9]+(?:\.[0-9]*)?\s*"
+_PLAIN = re.compile(rf"\s*(?:M{_POINT}(?:L{_POINT})*(?:Z\s*)?)+")
+"""Chains as most programs write them: a command before every point."""
 _COUNTS = {"M": 2, "L": 2, "H": 1, "V": 1, "C": 6, "S": 4, "Q": 4, "T": 2, "A": 7, "Z": 0}
 
 
@@ -43,7 +46,24 @@ def follow_path(text: str, to_page: PlaneMap, pen: Pen, *, layer: str) -> None:
         When the text is no path data; what stands before the fault is drawn.
 
     """
-    _Walk(to_page, pen, layer).follow(text)
+    if not _draw_plain(text, to_page, pen, layer=layer):
+        _Walk(to_page, pen, layer).follow(text)
+
+
+def _draw_plain(text: str, to_page: PlaneMap, pen: Pen, *, layer: str) -> bool:
+    """Draw absolute M, L and Z alone, whole chains at once; say whether the path was that."""
+    if not _PLAIN.fullmatch(text):
+        return False
+    a, c, b = PlaneMap(0, 1, 0).after(to_page)
+    for chain in text.split("M")[1:]:
+        closed = chain.rstrip().endswith("Z")
+        words = chain.rstrip(" \t\r\n,Z").replace("L", " ").replace(",", " ").split()
+        numbers = list(map(float, words))
+        points = list(map(complex, numbers[::2], numbers[1::2]))
+        points = [a * point + c * point.conjugate() + b for point in points]
+        if len(points) > 1:
+            pen.draw_straight(layer, points, closed=closed)
+    return True
 
 
 def _split(text: str) -> Iterator[tuple[str, list[float]]]:

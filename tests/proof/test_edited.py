@@ -18,7 +18,7 @@ from layout.files.dxf import render_dxf
 from layout.proof.prove import prove_files
 
 EXAMPLES_FOLDER = Path(layout.__file__).parents[1] / "examples"
-EXAMPLES = ["parlour", "multiscale-seven"]
+EXAMPLES = ["five-line", "multiscale-seven"]
 
 
 @pytest.mark.parametrize("example", ["multiscale-seven"])  # the one with round pocket ends
@@ -304,7 +304,8 @@ def with_curves(text: str) -> str:
 
 
 def test_a_file_of_any_name_finds_its_sheet(boards):
-    sheets = {name: boards(name).sheet for name in ("parlour", "bass")}
+    names = ("parlour", "five-line", "multiscale-seven", "bass")
+    sheets = {name: boards(name).sheet for name in names}
     report = prove_files(sheets, {"unnamed 7.dxf": boards("bass").dxf})
     assert report.files[0].sheet == "bass"
     assert report.passed
