@@ -11,6 +11,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from layout.drawing.board_marks import (
+    KNIFE_MARK_MM,
     draw_blank,
     draw_fret_labels,
     draw_holes,
@@ -18,7 +19,7 @@ from layout.drawing.board_marks import (
     draw_string_names,
 )
 from layout.drawing.freeing import cut_free
-from layout.drawing.legend import MIRRORED, draw_legend, offsets_lines, say_lines, with_lettering
+from layout.drawing.legend import MIRRORED, draw_legend, say_lines, with_lettering
 from layout.drawing.moves import mirrored_shape
 from layout.drawing.reference import draw_origin_mark
 from layout.drawing.shapes import (
@@ -37,6 +38,7 @@ from layout.drawing.shapes import (
 from layout.drawing.sheet import Sheet, make_sheet
 from layout.geometry.cross import CrossLine
 from layout.geometry.slots import outline_slot
+from layout.plan.marking import place_pins
 from layout.plan.model import Piece, Plan
 
 CLEAR_MM = 3.0
@@ -78,7 +80,7 @@ def board_notes(plan: Plan) -> tuple[str, ...]:
         "Unit: mm, 1:1. Seen from above, nut at the left.",
         "Origin: the nut line on the centre line.",
         _say_state(plan),
-        say_lines(offset=offsets_lines(plan)),
+        say_lines(plan),
         *_say_slots(plan),
     ]
     if plan.instrument.hand == "left":
@@ -193,11 +195,14 @@ def _strings(plan: Plan) -> Iterator[Shape]:
 
 def _figures(plan: Plan) -> Iterator[Shape]:
     """Fret labels beside the bass ends, string notes behind the nut, names of lines."""
+    blank = plan.instrument.board.blank_width_mm
+    foot = 0.0 if blank is None else -blank / 2 - KNIFE_MARK_MM
     places = []
     for fret in range(1, plan.instrument.frets.count + 1):
         x, y = _point(plan.pieces_of(fret)[-1].cut_bass_mm)
-        places.append((x, min(y, plan.board.bass.y_at(x)) - CLEAR_MM))
+        places.append((x, min(y, plan.board.bass.y_at(x), foot) - CLEAR_MM))
     yield from draw_fret_labels(plan.instrument.frets.labels, places)
-    behind = float(min(plan.board.wood_mm[:, 0].min(), plan.ends.nut_mm[:, 0].min()))
+    pins = [pin.x_mm - pin.size_mm / 2 for pin in place_pins(plan)]
+    behind = min(float(plan.board.wood_mm[:, 0].min()), float(plan.ends.nut_mm[:, 0].min()), *pins)
     yield from draw_string_names(plan, x_mm=behind - 2 * CLEAR_MM)
     yield from draw_line_names(plan, beyond_mm=TICK_MM)

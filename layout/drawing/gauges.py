@@ -106,7 +106,7 @@ def gauge_notes(plan: Plan, *, offset: bool | None = None) -> tuple[str, ...]:
         "Origin: top of the first arc, on the centre line.",
         "State of the wood: radiused. Hold gauges square to the centre line.",
         f"Top: {write_top_rule(plan)}.",
-        say_lines(offset=lines),
+        say_lines(plan, offset=lines),
     )
 
 

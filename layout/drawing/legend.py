@@ -30,9 +30,14 @@ def offsets_lines(plan: Plan) -> bool:
     return tooling is not None and tooling.lines == "offset"
 
 
-def say_lines(*, offset: bool) -> str:
-    """Say whether lines are nominal or offset."""
-    return "Lines: offset for the kerf." if offset else "Lines: nominal, no cutter offset."
+def say_lines(plan: Plan, *, offset: bool | None = None) -> str:
+    """Say whether lines are nominal or offset, and for which kerf; ``offset`` overrules the job."""
+    tooling = plan.instrument.tooling
+    if offset is False or not offsets_lines(plan) or tooling is None or tooling.kerf_mm is None:
+        return "Lines: nominal, no cutter offset."
+    kerf_x, kerf_y = tooling.kerf_mm
+    kerf = f"{kerf_x:g} mm" if kerf_x == kerf_y else f"{kerf_x:g} mm in x, {kerf_y:g} mm in y"
+    return f"Lines: offset by half the kerf, {kerf}."
 
 
 def with_lettering(shapes: Sequence[Shape]) -> Extents:

@@ -72,7 +72,7 @@ def nut_saddle_notes(plan: Plan, *, moved_mm: float) -> tuple[str, ...]:
         "Origin: the nut line on the centre line.",
         f"Saddle: its true x is the drawn x {sign} {amount:.0f} mm.",
         f"State of the wood: {_say_state(plan)}. Done last, after the action.",
-        say_lines(offset=False),
+        say_lines(plan, offset=False),
         *nut_notes(plan),
         "Nut shift: along the string, + toward the saddle.",
         *saddle_notes(plan),

@@ -11,7 +11,7 @@ from collections.abc import Iterator
 import numpy as np
 
 from layout.drawing.freeing import cut_free
-from layout.drawing.legend import MIRRORED, draw_legend, offsets_lines, say_lines
+from layout.drawing.legend import MIRRORED, draw_legend, say_lines
 from layout.drawing.lettering import text_width_mm
 from layout.drawing.moves import mirrored_shape
 from layout.drawing.reference import draw_origin_mark
@@ -86,7 +86,7 @@ def slotting_notes(plan: Plan) -> tuple[str, ...]:
             f"Notches: {template.notch_mm:.2f} mm wide for a pin of that size, {DEPTH_MM:g} mm "
             f"deep, each on the middle of its slot; 0 is {zero}."
         ),
-        say_lines(offset=offsets_lines(plan)),
+        say_lines(plan),
     ]
     if plan.instrument.nut.zero == "edge":
         notes.append(

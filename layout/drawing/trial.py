@@ -12,7 +12,7 @@ from dataclasses import dataclass, replace
 import numpy as np
 
 from layout.drawing.freeing import cut_free
-from layout.drawing.legend import draw_legend, offsets_lines, say_lines
+from layout.drawing.legend import draw_legend, say_lines
 from layout.drawing.reference import BAR_MM, draw_check_bar, draw_origin_mark
 from layout.drawing.shapes import (
     CUT_OUTLINE,
@@ -102,7 +102,7 @@ def trial_notes(plan: Plan, left_out: tuple[float, ...] = ()) -> tuple[str, ...]
         "Unit: mm, 1:1.",
         "Origin: lower left corner of the scrap.",
         "State of the wood: a flat scrap of the board's wood, as thick.",
-        say_lines(offset=offsets_lines(plan)),
+        say_lines(plan),
         "Over each slot: width drawn for, and width when cut.",
         "Measure the bar; press the wire into each slot.",
     ]

@@ -179,7 +179,7 @@ def test_title_notes_and_check_bar_are_in_the_drawing() -> None:
         ({}, "Lines: nominal, no cutter offset."),
         (
             {"tooling": "{machine: laser, kerf: 0.1, lines: offset}"},
-            "Lines: offset for the kerf.",
+            "Lines: offset by half the kerf, 0.1 mm.",
         ),
         ({"hand": "left"}, "Left-handed: mirrored across the centre line."),
     ],

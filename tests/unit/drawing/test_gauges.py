@@ -93,7 +93,7 @@ def test_offset_lines_run_half_a_kerf_outside(plan_job) -> None:
     plain = draw_gauges(plan_job(**keys, tooling=laser % "on"))
     offset = draw_gauges(plan_job(**keys, tooling=laser % "offset"))
     assert "Lines: nominal, no cutter offset." in plain.notes
-    assert "Lines: offset for the kerf." in offset.notes
+    assert any(note.startswith("Lines: offset by half the kerf, ") for note in offset.notes)
     hollow, crown = (turn_of(arc_of(outline)).radius_mm for outline in gauges(offset))
     # Outside a hollow is toward its centre; outside a crown away from it.
     assert hollow == pytest.approx(304.9, abs=1e-3)

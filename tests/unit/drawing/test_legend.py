@@ -55,6 +55,10 @@ def test_columns_are_flush_right_and_do_not_touch() -> None:
     assert by_text["1 E4"].anchor[1] > by_text["12 E2"].anchor[1]
 
 
-def test_lines_are_nominal_or_offset() -> None:
-    assert say_lines(offset=False) == "Lines: nominal, no cutter offset."
-    assert say_lines(offset=True) == "Lines: offset for the kerf."
+def test_lines_are_nominal_or_offset(plan_job) -> None:
+    one = plan_job(tooling="{machine: laser, kerf: 0.1, lines: offset}")
+    two = plan_job(tooling="{machine: laser, kerf: {x: 0.1, y: 0.14}, lines: offset}")
+    assert say_lines(plan_job()) == "Lines: nominal, no cutter offset."
+    assert say_lines(one) == "Lines: offset by half the kerf, 0.1 mm."
+    assert say_lines(two) == "Lines: offset by half the kerf, 0.1 mm in x, 0.14 mm in y."
+    assert say_lines(one, offset=False) == "Lines: nominal, no cutter offset."
