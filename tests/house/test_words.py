@@ -170,7 +170,7 @@ UNWANTED = re.compile(
 def test_what_is_looked_for_would_be_found() -> None:
     for text in ("see /ho" + "me/mara/x", "# TO" + "DO later", "FIX" + "ME", "/ro" + "ot/.cache"):
         assert UNWANTED.search(text)
-    for text in ("a/work/b", "tests/readers", "layout/home.py", "method", "todo list"):
+    for text in ("a/worker/b", "tests/readers", "layout/home.py", "method", "todo list"):
         assert not UNWANTED.search(text)
 
 
