@@ -140,6 +140,13 @@ def read_quantity(
     TextError
         When the number or the unit is not understood, or a unit is missing.
 
+    Examples
+    --------
+    >>> read_quantity("25,5 in", LENGTH_UNITS_MM, bare="mm", what="a length")
+    Traceback (most recent call last):
+    ...
+    layout.errors.TextError: a number has a decimal point; write 25.5 in
+
     """
     shown = text.strip()
     names = ", ".join(units)
@@ -158,7 +165,11 @@ def read_quantity(
         raise TextError(
             f"{what} has one of the units {names}", f"write {known}" if known in units else ""
         )
-    return read_number(match[1]) * units[unit]
+    try:
+        return read_number(match[1]) * units[unit]
+    except TextError as error:
+        written = f" {match[2]}" if match[2] and error.remedy else ""
+        raise TextError(error.rule, error.remedy + written) from error
 
 
 def read_length_mm(text: str, *, bare: str = "mm") -> float:

@@ -29,11 +29,13 @@ def test_every_sheet_is_read_back(
             assert compare_with_sheet(sheet, read_svg(svg), SVG_MM) == [], sheet.name
 
 
-def test_every_sheet_of_one_example_is_read_by_the_other_dxf_reader(
-    read_dxf_node, compare_with_sheet, tmp_path
+@pytest.mark.parametrize("path", EXAMPLES, ids=lambda path: path.stem)
+def test_every_sheet_is_read_by_the_other_dxf_reader_in_both_versions(
+    path, read_dxf_gdal, read_dxf_node, compare_with_sheet, tmp_path
 ) -> None:
-    (path,) = [path for path in EXAMPLES if path.stem == "parlour"]
     for sheet in draw_sheets(make_plan(read_job(path))):
-        dxf = tmp_path / f"{sheet.name}.dxf"
-        dxf.write_bytes(render_dxf(sheet))
-        assert compare_with_sheet(sheet, read_dxf_node(dxf), DXF_MM) == [], sheet.name
+        new, old = tmp_path / f"{sheet.name}.dxf", tmp_path / f"{sheet.name}-mm.dxf"
+        new.write_bytes(render_dxf(sheet))
+        old.write_bytes(render_dxf(sheet, version="r12"))
+        assert compare_with_sheet(sheet, read_dxf_node(new), DXF_MM) == [], sheet.name
+        assert compare_with_sheet(sheet, read_dxf_gdal(old), DXF_MM) == [], sheet.name

@@ -28,7 +28,7 @@ pdfium = pytest.importorskip("pypdfium2")
 raw = pytest.importorskip("pypdfium2.raw")
 
 EXAMPLES = Path(__file__).parents[2] / "examples"
-NAMES = ["parlour", "multiscale-seven", "bass"]
+NAMES = ("bass", "five-line", "multiscale-seven", "nylon", "parlour")
 SIZES = ["A4", "A3", "Letter", "Tabloid", "roll"]
 PDF_MM = 5e-3
 ARM_MM = 8.0
