@@ -17,21 +17,21 @@ class Colour(NamedTuple):
     rgb: str
 
 
-# Chosen for this product: dark, well apart, every family of operations in its own hues. They mean
-# nothing to a machine.
+# Chosen for this product: seen on white and on black, well apart, every family of operations in its
+# own hues. They mean nothing to a machine.
 COLOURS: dict[Layer, Colour] = {
     "CUT_OUTLINE": Colour(212, "#a500a5"),
-    "CUT_SLOT": Colour(172, "#0000a5"),
+    "CUT_SLOT": Colour(160, "#003fff"),
     "CUT_POCKET": Colour(132, "#00a5a5"),
-    "CUT_FLOOR": Colour(152, "#0052a5"),
+    "CUT_FLOOR": Colour(150, "#007fff"),
     "DRILL_MARK": Colour(42, "#a57c00"),
     "DRILL_PIN": Colour(22, "#a52900"),
     "SCRIBE_STOP": Colour(92, "#00a500"),
-    "ENGRAVE_LABEL": Colour(36, "#4c2600"),
+    "ENGRAVE_LABEL": Colour(32, "#a55200"),
     "REF_CENTRE": Colour(251, "#656565"),
     "REF_STRING": Colour(253, "#999999"),
     "REF_LINE": Colour(142, "#007ca5"),
-    "REF_BAR": Colour(250, "#000000"),
+    "REF_BAR": Colour(8, "#808080"),
 }
 
 _NAME = re.compile(r"[A-Za-z_][A-Za-z0-9_-]{0,30}")
