@@ -102,3 +102,20 @@ def test_its_help_says_what_it_does(run):
     ran = run("prove", "--help")
     assert ran.status == 0
     assert "Exit status 1 when a file fails" in " ".join(ran.out.split())
+
+
+@pytest.mark.parametrize(
+    "words",
+    [["--positive"], ["--dxf", "r12", "--arcs", "pieces"], ["--arcs", "chords", "--positive"]],
+)
+def test_drawings_of_every_form_prove(run, examples, tmp_path, words):
+    job, directory = examples / "multiscale-seven.yaml", tmp_path / "cut"
+    ran = run("cut", job, "-o", directory, *words)
+    assert ran.status == 0
+    assert (directory / ("board-mm.dxf" if "r12" in words else "board.dxf")).exists()
+    moved = ["--positive"] if "--positive" in words else []
+    assert run("prove", job, directory, *moved).status == 0
+    if moved:  # without the word they are not where the job puts them
+        told = run("prove", job, directory)
+        assert told.status == 1
+        assert "FAILS shifted" in told.out
