@@ -29,6 +29,7 @@ from layout.job.edit import make_starter, starter_kinds
 from layout.job.read import read_job, read_job_text
 from layout.job.records import library_names, load_library_record
 from layout.job.tree import read_bytes
+from layout.plan.fault_places import placing_faults
 from layout.plan.make import make_plan
 from layout.plan.model import Plan
 from layout.proof.page import write_report
@@ -98,7 +99,8 @@ def draw_sheets(plan: Plan, *, positive: bool = False) -> tuple[Sheet, ...]:
 def draw_all(plan: Plan, *, positive: bool = False) -> Drawn:
     """Draw every sheet, and lay the paper template out on pages."""
     template = draw_template(plan)
-    tiling = plan_tiles(template, plan.instrument.paper, unit=plan.instrument.unit)
+    with placing_faults(plan.instrument):
+        tiling = plan_tiles(template, plan.instrument.paper, unit=plan.instrument.unit)
     return Drawn(draw_sheets(plan, positive=positive), template, tiling)
 
 

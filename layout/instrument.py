@@ -441,3 +441,5 @@ class Instrument:
     assumed: tuple[Assumed, ...] = ()
     findings: tuple[Finding, ...] = ()
     job_sha256: str = ""
+    file: str = "job"
+    lines: Mapping[str, int] = field(default_factory=dict, repr=False, compare=False)

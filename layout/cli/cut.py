@@ -7,7 +7,7 @@ from pathlib import Path
 import click
 
 from layout.api import Format, cut_job
-from layout.cli.shared import JOB, STRICT, end_strictly, naming_faults, tell
+from layout.cli.shared import JOB, STRICT, end_strictly, tell
 from layout.files.arcs import Arcs
 from layout.files.dxf import DxfVersion
 from layout.files.page import CAUTIONS
@@ -56,14 +56,13 @@ def command(
     strict: bool,
 ) -> None:
     """Plan JOB and write drawings, positions and plan into DIR."""
-    with naming_faults(job):
-        done = cut_job(
-            job,
-            directory,
-            force=force,
-            form=Format(version, arcs, positive),
-            approve=lambda plan: end_strictly(plan.findings, strict=strict),
-        )
+    done = cut_job(
+        job,
+        directory,
+        force=force,
+        form=Format(version, arcs, positive),
+        approve=lambda plan: end_strictly(plan.findings, strict=strict),
+    )
     for name in done.sizes:
         click.echo(directory / name)
     for finding in done.plan.findings:

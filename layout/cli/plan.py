@@ -6,7 +6,7 @@ from pathlib import Path
 
 import click
 
-from layout.cli.shared import JOB, STRICT, end_strictly, naming_faults
+from layout.cli.shared import JOB, STRICT, end_strictly
 from layout.files.page import render_page
 from layout.files.plan_json import render_plan_json
 from layout.job.read import read_job  # not from layout.api: a plan need not load the drawing
@@ -22,8 +22,7 @@ from layout.plan.make import make_plan
 @STRICT
 def command(job: Path, *, inch: bool, as_json: bool, strict: bool) -> None:
     """Print where every stop, nut and saddle of JOB goes, and what error is left in cents."""
-    with naming_faults(job):
-        plan = make_plan(read_job(job))
+    plan = make_plan(read_job(job))
     if as_json:
         click.echo(render_plan_json(plan).decode("ascii"), nl=False)
     else:

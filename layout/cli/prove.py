@@ -9,7 +9,7 @@ from pathlib import Path
 import click
 
 from layout.api import draw_all, make_plan, prove_drawings, read_job
-from layout.cli.shared import JOB, naming_faults
+from layout.cli.shared import JOB
 from layout.errors import FileError, TextError
 from layout.plan.model import Plan
 from layout.proof.page import write_report
@@ -47,9 +47,8 @@ def command(job: Path, *, paths: tuple[Path, ...], tolerance: str, positive: boo
     """
     tolerance_mm = _read_tolerance(tolerance)
     files = {str(path): _read_file(path) for path in _list_drawings(paths)}
-    with naming_faults(job):
-        plan = make_plan(read_job(job))
-        report = _prove(plan, files, tolerance_mm=tolerance_mm, positive=positive)
+    plan = make_plan(read_job(job))
+    report = _prove(plan, files, tolerance_mm=tolerance_mm, positive=positive)
     click.echo(write_report(report), nl=False)
     if not report.passed:
         sys.exit(1)

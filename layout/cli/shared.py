@@ -3,32 +3,16 @@
 from __future__ import annotations
 
 import sys
-from collections.abc import Iterator, Sequence
-from contextlib import contextmanager
-from dataclasses import replace
+from collections.abc import Sequence
 from pathlib import Path
 
 import click
 
-from layout.errors import JobError
 from layout.files.page import write_finding
 from layout.findings import Finding
 
 JOB = click.argument("job", metavar="JOB", type=click.Path(path_type=Path))
 STRICT = click.option("--strict", is_flag=True, help="Fail when there are warnings or errors.")
-
-
-@contextmanager
-def naming_faults(job: Path) -> Iterator[None]:
-    """Put the file's name into faults found after reading, which know no file and say ``job``."""
-    try:
-        yield
-    except JobError as error:
-        named = [
-            replace(fault, file=job.name) if fault.file == "job" else fault
-            for fault in error.faults
-        ]
-        raise JobError(named) from error
 
 
 def tell(finding: Finding) -> None:

@@ -7,6 +7,7 @@ another; faults are told in file order.
 from __future__ import annotations
 
 import hashlib
+from collections.abc import Iterator
 from dataclasses import replace
 from pathlib import Path
 from typing import Literal
@@ -38,7 +39,7 @@ from layout.job.shop import (
     read_tooling,
 )
 from layout.job.strings import read_strings
-from layout.job.tree import parse_tree, read_bytes
+from layout.job.tree import ListNode, Node, TableNode, parse_tree, read_bytes
 from layout.job.undrawn import find_undrawn
 
 JOB_KEYS = (
@@ -103,11 +104,29 @@ def read_job_text(data: bytes, name: str, *, folder: Path | None = None) -> Inst
     reading.findings.extend(find_undrawn(root_node))
     reading.finish()
     assert instrument is not None  # or there was a fault
-    return _with_notes(instrument, reading)
+    return replace(
+        instrument,
+        assumed=tuple(reading.assumed),
+        findings=tuple(reading.findings),
+        file=name,
+        lines=dict(_list_lines(root_node, "")),
+    )
 
 
-def _with_notes(instrument: Instrument, reading: Reading) -> Instrument:
-    return replace(instrument, assumed=tuple(reading.assumed), findings=tuple(reading.findings))
+def _list_lines(node: Node, path: str) -> Iterator[tuple[str, int]]:
+    """Give every key path, list places counted from 1, and its line."""
+    match node:
+        case TableNode(entries=entries):
+            for entry in entries:
+                below = f"{path}.{entry.key}".lstrip(".")
+                yield below, entry.line
+                yield from _list_lines(entry.node, below)
+        case ListNode(items=items):
+            for place, item in enumerate(items, start=1):
+                yield f"{path}[{place}]", item.line
+                yield from _list_lines(item, f"{path}[{place}]")
+        case _:
+            return
 
 
 def _read_instrument(root: Table, *, sha256: str) -> Instrument | None:

@@ -16,6 +16,7 @@ from layout.plan.clashing import measure_clash
 from layout.plan.compensating import Compensated, compensate, zero_offset_mm
 from layout.plan.cutting import cut_pieces, cut_zero_fret
 from layout.plan.doubts import find_doubts
+from layout.plan.fault_places import placing_faults
 from layout.plan.laying import Laid, lay_out
 from layout.plan.model import Loads, NutAndSaddle, Plan
 from layout.plan.sounding import describe_strings
@@ -41,13 +42,18 @@ def make_plan(instrument: Instrument) -> Plan:
     Raises
     ------
     JobError
-        When the geometry is impossible, with the key that says so.
+        When the geometry is impossible, with the key that says so and its line.
     PitchError
         When the temperament has no such degree.
     NoSolutionError
         When the physics finds no answer.
 
     """
+    with placing_faults(instrument):
+        return _plan(instrument)
+
+
+def _plan(instrument: Instrument) -> Plan:
     laid = lay_out(instrument)
     sounding = describe_strings(instrument, laid)
     compensated = compensate(instrument, laid, sounding)

@@ -100,10 +100,10 @@ def test_ten_faults_are_ten_lines_each_with_its_place(run, tmp_path) -> None:
     assert not (tmp_path / "out").exists()
 
 
-def test_faults_found_after_reading_name_the_file(run, write_job, tmp_path) -> None:
+def test_faults_found_after_reading_name_the_file_and_the_line(run, write_job, tmp_path) -> None:
     job = write_job("short.yaml", board="{length: 30}")
     for words in ways(job, tmp_path / "out"):
         ran = run(*words)
         assert (ran.status, ran.out) == (1, "")
-        assert re.match(r"short\.yaml board[\w.]*: fret 1 runs off", ran.err)
+        assert re.match(r"short\.yaml:6 board[\w.]*: fret 1 runs off", ran.err)
     assert not (tmp_path / "out").exists()
