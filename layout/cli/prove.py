@@ -51,6 +51,9 @@ def command(job: Path, *, paths: tuple[Path, ...], tolerance: str, positive: boo
     report = _prove(plan, files, tolerance_mm=tolerance_mm, positive=positive)
     click.echo(write_report(report), nl=False)
     if not report.passed:
+        codes = {problem.code for file in report.files for problem in file.problems}
+        if "shifted" in codes and not positive:
+            click.echo("Drawings cut with --positive are proved with --positive.", err=True)
         sys.exit(1)
 
 

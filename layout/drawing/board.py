@@ -17,9 +17,10 @@ from layout.drawing.board_marks import (
     draw_holes,
     draw_line_names,
     draw_string_names,
+    hole_kerf_mm,
 )
 from layout.drawing.freeing import cut_free
-from layout.drawing.legend import MIRRORED, draw_legend, say_lines, with_lettering
+from layout.drawing.legend import MIRRORED, draw_legend, offsets_lines, say_lines, with_lettering
 from layout.drawing.moves import mirrored_shape
 from layout.drawing.reference import draw_origin_mark
 from layout.drawing.shapes import (
@@ -38,7 +39,7 @@ from layout.drawing.shapes import (
 from layout.drawing.sheet import Sheet, make_sheet
 from layout.geometry.cross import CrossLine
 from layout.geometry.slots import outline_slot
-from layout.plan.marking import place_pins
+from layout.plan.marking import place_face_dots, place_pins
 from layout.plan.model import Piece, Plan
 
 CLEAR_MM = 3.0
@@ -83,6 +84,9 @@ def board_notes(plan: Plan) -> tuple[str, ...]:
         say_lines(plan),
         *_say_slots(plan),
     ]
+    marked = place_face_dots(plan) or place_pins(plan)
+    if marked and offsets_lines(plan) and hole_kerf_mm(plan) is None:
+        notes.append("Holes: nominal; a beam on the line leaves them wider by its kerf.")
     if plan.instrument.hand == "left":
         notes.append(MIRRORED)
     return tuple(notes)

@@ -32,11 +32,24 @@ KNIFE_MARK_MM = 4.0
 
 
 def draw_holes(plan: Plan) -> Iterator[Shape]:
-    """Draw face dots and locating pins as circles."""
+    """Draw face dots and locating pins, inward by half a kerf that is the same all round.
+
+    A beam whose kerf differs by axis cuts no circle along one: there holes stay nominal.
+    """
+    inward = (hole_kerf_mm(plan) or 0.0) / 2
     for dot in place_face_dots(plan):
-        yield Circle(DRILL_MARK, (dot.x_mm, dot.y_mm), dot.size_mm / 2)
+        yield Circle(DRILL_MARK, (dot.x_mm, dot.y_mm), max(dot.size_mm / 2 - inward, 0.0))
     for pin in place_pins(plan):
-        yield Circle(DRILL_PIN, (pin.x_mm, pin.y_mm), pin.size_mm / 2)
+        yield Circle(DRILL_PIN, (pin.x_mm, pin.y_mm), max(pin.size_mm / 2 - inward, 0.0))
+
+
+def hole_kerf_mm(plan: Plan) -> float | None:
+    """Give the kerf that holes are drawn inward for; None where they stay nominal."""
+    tooling = plan.instrument.tooling
+    if tooling is None or tooling.lines != "offset" or tooling.kerf_mm is None:
+        return None
+    kerf_x, kerf_y = tooling.kerf_mm
+    return kerf_x if kerf_x == kerf_y else None
 
 
 def draw_blank(plan: Plan) -> Iterator[Shape]:

@@ -222,3 +222,13 @@ def test_labels_of_close_frets_do_not_touch(scale: str, frets: str) -> None:
     heights = {round(high - low, 6) for _, _, low, high in boxes}
     assert max(heights) <= FIGURE_MM
     assert max(heights) == pytest.approx(FIGURE_MM, abs=1e-6) or scale != "628.65"
+
+
+@pytest.mark.parametrize(
+    ("kerf", "radius", "told"), [("0.2", 1.4, False), ("{x: 0.2, y: 0.1}", 1.5, True)]
+)
+def test_holes_allow_for_a_kerf_that_is_the_same_all_round(kerf, radius, told) -> None:
+    tooling = f"{{machine: laser, kerf: {kerf}, lines: offset}}"
+    sheet = draw_board(plan_of(tooling=tooling, pins="{size: 3}"))
+    assert [hole.radius_mm for hole in on(sheet, "DRILL_PIN")] == pytest.approx([radius, radius])
+    assert any(note.startswith("Holes: nominal") for note in sheet.notes) == told
