@@ -189,9 +189,3 @@ def _drawn_half_and_inset(cut: SlotCut, way: Array) -> tuple[float, float]:
     across = float(np.hypot(kerf_x * way[1], kerf_y * way[0]))
     along = float(np.hypot(kerf_x * way[0], kerf_y * way[1]))
     return (cut.drawn_mm + kerf_x - across) / 2, along / 2
-
-
-def full_depth_length_mm(cut: SlotCut, treble_mm: Array, bass_mm: Array, *, blind: bool) -> float:
-    """Measure how much of a slot is its full width: a round cutter leaves the ends short."""
-    length = float(np.hypot(*(treble_mm - bass_mm)))
-    return length - 2 * cut.corner_mm if blind else length

@@ -8,7 +8,6 @@ from layout.geometry.kerf import offset_inward
 from layout.geometry.slots import (
     SlotCut,
     choose_cut,
-    full_depth_length_mm,
     outline_slot,
     run_slot,
 )
@@ -150,14 +149,6 @@ def test_outlines_repeat_no_point(run):
         points = outline_slot(cut, TREBLE, BASS, run=run).points_mm
         gaps = np.hypot(*np.diff(np.concatenate((points, points[:1])), axis=0).T)
         assert gaps.min() > 0.05
-
-
-def test_a_round_cutter_leaves_blind_ends_short_of_full_width():
-    cut = choose_cut(Slots(0.58), router(0.4))
-    assert full_depth_length_mm(cut, TREBLE, BASS, blind=False) == pytest.approx(LENGTH, abs=1e-12)
-    assert full_depth_length_mm(cut, TREBLE, BASS, blind=True) == pytest.approx(
-        LENGTH - 0.4, abs=1e-12
-    )
 
 
 @pytest.mark.parametrize("slant", [0.0, 0.2, -0.35])
